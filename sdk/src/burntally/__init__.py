@@ -1,0 +1,1 @@
+"""Delta-v and propellant budgets of multi-stage vehicles: the contract, the client and the commands."""

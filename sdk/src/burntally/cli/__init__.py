@@ -1,0 +1,1 @@
+"""The commands: a client like any other."""

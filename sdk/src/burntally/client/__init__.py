@@ -1,0 +1,1 @@
+"""Clients of a service, over HTTP or in the same process."""

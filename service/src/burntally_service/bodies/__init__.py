@@ -1,0 +1,1 @@
+"""The system of bodies: catalogue or user-made, ephemerides, frames."""

@@ -1,0 +1,1 @@
+"""From a design to its budget: resolve, plan, lower, tally, explain."""

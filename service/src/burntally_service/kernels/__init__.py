@@ -1,0 +1,1 @@
+"""Equations: pure functions of floats, named as textbooks name the quantity."""

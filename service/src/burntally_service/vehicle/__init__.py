@@ -1,0 +1,1 @@
+"""A stack and how it burns: attached parts, propellant, engines lit, jettisons."""
