@@ -1,0 +1,201 @@
+"""The one door to numba: the compiled twin of a kernel, made when it is first asked for.
+
+numba is imported inside the functions here, because a process that computes single designs must never pay for it.
+"""
+
+from __future__ import annotations
+
+import functools
+import hashlib
+import os
+import tempfile
+import threading
+from pathlib import Path
+from types import FunctionType
+from typing import TYPE_CHECKING, Any, Final, ParamSpec, TypeVar
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Iterator, Sequence
+
+    import numpy as np
+    from numpy.typing import NDArray
+
+__all__ = ["cache_directory", "compiled", "kernel_digest", "records"]
+
+_P = ParamSpec("_P")
+_R = TypeVar("_R")
+
+_PACKAGE: Final = __name__.rpartition(".")[0]
+_DIGEST_LENGTH: Final = 16
+
+# No fastmath and no vectorised library: both would change bits between the gears and between processors.
+_OPTIONS: Final = {"nogil": True, "error_model": "numpy"}
+
+_twins: dict[FunctionType, Any] = {}
+_lock = threading.RLock()
+
+
+def compiled(kernel: Callable[_P, _R]) -> Callable[_P, _R]:
+    """Compiled twin of a kernel, with the same signature and the same bits.
+
+    The kernels that it calls by name are replaced by their own twins, recursively. The twin is made once for a
+    process and kept; its machine code is kept on disk where a directory can be written.
+
+    Parameters
+    ----------
+    kernel : callable
+        Plain function defined in the kernels package.
+
+    Returns
+    -------
+    callable
+        The twin. It takes floats, named tuples of floats, float64 arrays in place of sequences of floats, and
+        structured arrays (see `records`) in place of sequences of rows.
+
+    Raises
+    ------
+    TypeError
+        If `kernel` is not a plain function of the kernels package.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.rocket import exhaust_speed
+    >>> compiled(exhaust_speed)(300.0) == exhaust_speed(300.0)
+    True
+    """
+    if not _is_kernel(kernel):
+        message = f"{kernel!r} is not a plain function of {_PACKAGE}"
+        raise TypeError(message)
+    with _lock:
+        twin: Callable[_P, _R] = _twin(kernel)
+    return twin
+
+
+def records(row_type: type[Any], rows: Sequence[Any]) -> NDArray[np.void]:
+    """Rows of floats as the structured array that compiled kernels read, field by field.
+
+    Parameters
+    ----------
+    row_type : type
+        Named tuple whose fields are all floats.
+    rows : sequence of row_type
+        The rows; may be empty.
+
+    Returns
+    -------
+    numpy.ndarray
+        Shape (len(rows),), one float64 field for each field of `row_type`, in its order.
+
+    Examples
+    --------
+    >>> from typing import NamedTuple
+    >>> class Point(NamedTuple):
+    ...     x: float
+    ...     y: float
+    >>> records(Point, [Point(1.0, 2.0)])[0]["y"]
+    np.float64(2.0)
+    """
+    import numpy as np  # noqa: PLC0415  (numpy costs 0.15 s, which the scalar gear must not pay)
+
+    layout = np.dtype([(field, np.float64) for field in row_type._fields])
+    return np.array([tuple(row) for row in rows], dtype=layout)
+
+
+@functools.cache
+def kernel_digest() -> str:
+    """Digest of the source text of all kernels.
+
+    It names the cache folder, since numba's own cache looks at one file alone and serves stale code after an edit in
+    a kernel that this one calls.
+
+    Returns
+    -------
+    str
+        Hexadecimal digits.
+    """
+    digest = hashlib.sha256()
+    folder = Path(__file__).parent
+    for path in sorted(folder.rglob("*.py")):
+        digest.update(path.relative_to(folder).as_posix().encode())
+        digest.update(path.read_bytes())
+    return digest.hexdigest()[:_DIGEST_LENGTH]
+
+
+@functools.cache
+def cache_directory() -> Path | None:
+    """Folder for machine code of these very sources, or None where nothing can be written.
+
+    Returns
+    -------
+    pathlib.Path or None
+        Below ``NUMBA_CACHE_DIR`` if that is set, otherwise below the user's cache directory. None means that the
+        twins are compiled anew in each process.
+    """
+    for base in _cache_bases():
+        folder = base / kernel_digest()
+        if _is_writable(folder):
+            return folder
+    return None
+
+
+def _cache_bases() -> Iterator[Path]:
+    """Yield the directories to try, the user's wish first."""
+    wished = os.environ.get("NUMBA_CACHE_DIR")
+    if wished:
+        yield Path(wished)
+        return
+    standard = os.environ.get("XDG_CACHE_HOME")
+    if standard:
+        yield Path(standard) / "burntally"
+    elif "HOME" in os.environ:
+        yield Path(os.environ["HOME"]) / ".cache" / "burntally"
+
+
+def _is_writable(folder: Path) -> bool:
+    """Tell by writing: permission bits lie on read-only mounts and for the superuser."""
+    try:
+        folder.mkdir(parents=True, exist_ok=True)
+        with tempfile.TemporaryFile(dir=folder):
+            return True
+    except OSError:
+        return False
+
+
+def _is_kernel(thing: object) -> bool:
+    """Tell whether something is a plain function of the kernels package."""
+    return isinstance(thing, FunctionType) and f"{thing.__module__}.".startswith(f"{_PACKAGE}.")
+
+
+def _twin(kernel: Any) -> Any:
+    """Make the twin of a kernel after the twins of those that it calls."""
+    if kernel not in _twins:
+        _twins[kernel] = _compile(_rebound(kernel))
+    return _twins[kernel]
+
+
+def _rebound(kernel: FunctionType) -> FunctionType:
+    """Copy a kernel, with the kernels among its globals replaced by their twins."""
+    names = {**kernel.__globals__}
+    for name in kernel.__code__.co_names:
+        if _is_kernel(names.get(name)):
+            names[name] = _twin(names[name])
+    copy = FunctionType(kernel.__code__, names, kernel.__name__, kernel.__defaults__, kernel.__closure__)
+    copy.__module__ = kernel.__module__
+    copy.__qualname__ = kernel.__qualname__
+    return copy
+
+
+def _compile(function: FunctionType) -> Any:
+    """Hand a function to numba, with a cache if there is a place for one."""
+    import numba  # noqa: PLC0415  (0.5 s and 60 MB, for batches alone)
+
+    folder = cache_directory()
+    if folder is None:
+        return numba.njit(**_OPTIONS)(function)
+    # numba reads its setting when the dispatcher is made; the setting is put back so that others keep their own.
+    before = numba.config.CACHE_DIR
+    numba.config.CACHE_DIR = str(folder)
+    try:
+        return numba.njit(cache=True, **_OPTIONS)(function)
+    finally:
+        numba.config.CACHE_DIR = before
