@@ -1,1 +1,1 @@
-"""The contract: one frozen struct per noun, and the border where unit strings become SI floats."""
+"""The contract: every noun of a request and of an answer, written once."""
