@@ -1,0 +1,32 @@
+"""Each tool that reads the code finds nothing to say."""
+
+import sys
+from collections.abc import Callable
+
+
+def test_ruff_has_no_finding(passes: Callable[..., None]) -> None:
+    passes("ruff", "check", "--no-cache")
+
+
+def test_the_code_is_formatted(passes: Callable[..., None]) -> None:
+    passes("ruff", "format", "--check", "--no-cache")
+
+
+def test_mypy_accepts_both_packages(passes: Callable[..., None]) -> None:
+    passes("mypy", "sdk/src", "service/src")
+
+
+def test_mypy_accepts_the_tests(passes: Callable[..., None]) -> None:
+    passes("mypy", "tests")
+
+
+def test_pyright_accepts_both_packages(passes: Callable[..., None]) -> None:
+    passes("basedpyright", "--pythonpath", sys.executable)
+
+
+def test_imports_run_downhill(passes: Callable[..., None]) -> None:
+    passes("lint-imports", "--no-cache")
+
+
+def test_the_image_file_has_no_finding(passes: Callable[..., None]) -> None:
+    passes("hadolint", "docker/Dockerfile")
