@@ -7,7 +7,14 @@ from msgspec import Struct
 
 from burntally.model.scalars import doc
 
-__all__ = ["BurntallyError", "ContractError", "UncomputableError", "Violation"]
+__all__ = [
+    "BurntallyError",
+    "ContractError",
+    "InconsistentError",
+    "NotFoundError",
+    "UncomputableError",
+    "Violation",
+]
 
 
 class Violation(Struct, frozen=True, kw_only=True, omit_defaults=True):
@@ -41,3 +48,19 @@ class UncomputableError(_ViolationsError):
     """The request fits the contract and cannot be computed."""
 
     code: ClassVar[str] = "uncomputable"
+
+
+class InconsistentError(ContractError):
+    """Every field fits its schema, and together they break a rule that no schema can state.
+
+    An error of its own, so that whoever knows the published schema alone can count on it: what fits the schema is
+    never answered with `invalid-request`.
+    """
+
+    code: ClassVar[str] = "inconsistent-request"
+
+
+class NotFoundError(_ViolationsError):
+    """Nothing bears the name that was asked for."""
+
+    code: ClassVar[str] = "not-found"
