@@ -38,6 +38,8 @@ __all__ = [
 ]
 
 UNIT_KEY: Final = "x-unit"
+OR_UNIT_KEY: Final = "x-unit-or"
+"""Unit of another dimension that a string may carry as well: a speed for a specific impulse."""
 
 
 def doc(text: str) -> Meta:
@@ -45,13 +47,13 @@ def doc(text: str) -> Meta:
     return Meta(description=text)
 
 
-def _unit(name: str) -> dict[str, str]:
-    return {UNIT_KEY: name}
+def _unit(name: str, *, or_unit: str | None = None) -> dict[str, str]:
+    return {UNIT_KEY: name} if or_unit is None else {UNIT_KEY: name, OR_UNIT_KEY: or_unit}
 
 
 Mass = Annotated[float, Meta(ge=0.0, le=1e9, extra_json_schema=_unit("kg"))]
 Thrust = Annotated[float, Meta(gt=0.0, le=1e9, extra_json_schema=_unit("N"))]
-Isp = Annotated[float, Meta(ge=1.0, le=1e6, extra_json_schema=_unit("s"))]
+Isp = Annotated[float, Meta(ge=1.0, le=1e6, extra_json_schema=_unit("s", or_unit="m/s"))]
 DeltaV = Annotated[float, Meta(ge=0.0, le=1e6, extra_json_schema=_unit("m/s"))]
 Speed = Annotated[float, Meta(ge=0.0, le=1e6, extra_json_schema=_unit("m/s"))]
 Altitude = Annotated[float, Meta(ge=-1e5, le=1e13, extra_json_schema=_unit("m"))]
