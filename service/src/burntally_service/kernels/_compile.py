@@ -3,20 +3,17 @@
 numba is imported inside the functions here, because a process that computes single designs must never pay for it.
 """
 
-from __future__ import annotations
-
 import functools
 import hashlib
 import os
 import tempfile
 import threading
+from collections.abc import Callable, Iterator, Sequence
 from pathlib import Path
 from types import FunctionType
-from typing import TYPE_CHECKING, Any, Final, ParamSpec, TypeVar
+from typing import TYPE_CHECKING, Any, Final, NamedTuple, ParamSpec, TypeGuard, TypeVar, cast
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterator, Sequence
-
     import numpy as np
     from numpy.typing import NDArray
 
@@ -28,10 +25,7 @@ _R = TypeVar("_R")
 _PACKAGE: Final = __name__.rpartition(".")[0]
 _DIGEST_LENGTH: Final = 16
 
-# No fastmath and no vectorised library: both would change bits between the gears and between processors.
-_OPTIONS: Final = {"nogil": True, "error_model": "numpy"}
-
-_twins: dict[FunctionType, Any] = {}
+_twins: dict[FunctionType, Callable[..., object]] = {}
 _lock = threading.RLock()
 
 
@@ -67,11 +61,10 @@ def compiled(kernel: Callable[_P, _R]) -> Callable[_P, _R]:
         message = f"{kernel!r} is not a plain function of {_PACKAGE}"
         raise TypeError(message)
     with _lock:
-        twin: Callable[_P, _R] = _twin(kernel)
-    return twin
+        return cast("Callable[_P, _R]", _twin(kernel))
 
 
-def records(row_type: type[Any], rows: Sequence[Any]) -> NDArray[np.void]:
+def records(row_type: type[tuple[Any, ...]], rows: Sequence[tuple[Any, ...]]) -> "NDArray[np.void]":
     """Rows of floats as the structured array that compiled kernels read, field by field.
 
     Parameters
@@ -95,9 +88,9 @@ def records(row_type: type[Any], rows: Sequence[Any]) -> NDArray[np.void]:
     >>> records(Point, [Point(1.0, 2.0)])[0]["y"]
     np.float64(2.0)
     """
-    import numpy as np  # noqa: PLC0415  (numpy costs 0.15 s, which the scalar gear must not pay)
+    import numpy as np
 
-    layout = np.dtype([(field, np.float64) for field in row_type._fields])
+    layout = np.dtype([(field, np.float64) for field in cast("type[NamedTuple]", row_type)._fields])
     return np.array([tuple(row) for row in rows], dtype=layout)
 
 
@@ -161,12 +154,12 @@ def _is_writable(folder: Path) -> bool:
         return False
 
 
-def _is_kernel(thing: object) -> bool:
+def _is_kernel(thing: object) -> TypeGuard[FunctionType]:
     """Tell whether something is a plain function of the kernels package."""
     return isinstance(thing, FunctionType) and f"{thing.__module__}.".startswith(f"{_PACKAGE}.")
 
 
-def _twin(kernel: Any) -> Any:
+def _twin(kernel: FunctionType) -> Callable[..., object]:
     """Make the twin of a kernel after the twins of those that it calls."""
     if kernel not in _twins:
         _twins[kernel] = _compile(_rebound(kernel))
@@ -177,25 +170,25 @@ def _rebound(kernel: FunctionType) -> FunctionType:
     """Copy a kernel, with the kernels among its globals replaced by their twins."""
     names = {**kernel.__globals__}
     for name in kernel.__code__.co_names:
-        if _is_kernel(names.get(name)):
-            names[name] = _twin(names[name])
+        if _is_kernel(callee := names.get(name)):
+            names[name] = _twin(callee)
     copy = FunctionType(kernel.__code__, names, kernel.__name__, kernel.__defaults__, kernel.__closure__)
     copy.__module__ = kernel.__module__
     copy.__qualname__ = kernel.__qualname__
     return copy
 
 
-def _compile(function: FunctionType) -> Any:
+def _compile(function: FunctionType) -> Callable[..., object]:
     """Hand a function to numba, with a cache if there is a place for one."""
-    import numba  # noqa: PLC0415  (0.5 s and 60 MB, for batches alone)
+    import numba
 
     folder = cache_directory()
-    if folder is None:
-        return numba.njit(**_OPTIONS)(function)
-    # numba reads its setting when the dispatcher is made; the setting is put back so that others keep their own.
-    before = numba.config.CACHE_DIR
-    numba.config.CACHE_DIR = str(folder)
+    # numba reads this setting when the dispatcher is made; it is put back so that others keep their own.
+    settings = vars(numba.config)
+    before = settings["CACHE_DIR"]
+    settings["CACHE_DIR"] = str(folder)
     try:
-        return numba.njit(cache=True, **_OPTIONS)(function)
+        # No fastmath and no vectorised library: both would change bits between the gears and between processors.
+        return numba.njit(function, cache=folder is not None, nogil=True, error_model="numpy")
     finally:
-        numba.config.CACHE_DIR = before
+        settings["CACHE_DIR"] = before

@@ -3,8 +3,6 @@
 Bodies and atmospheres are data with their own sources; only what a standard fixes for good is written here.
 """
 
-from __future__ import annotations
-
 from typing import Final
 
 __all__ = ["DAY", "G0", "JULIAN_YEAR", "STANDARD_PRESSURE"]

@@ -1,14 +1,9 @@
 """Rocket equation, propellant, burn time and the vertical ascent in closed form."""
 
-from __future__ import annotations
-
 import math
-from typing import TYPE_CHECKING
+from collections.abc import Sequence
 
 from burntally_service.kernels.constants import G0
-
-if TYPE_CHECKING:
-    from collections.abc import Sequence
 
 __all__ = [
     "burn_time",
