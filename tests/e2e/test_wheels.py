@@ -19,7 +19,7 @@ def _tracked(folder: str) -> set[str]:
 
 @pytest.mark.parametrize("dist", ["sdk", "service"])
 def test_a_wheel_carries_its_whole_package(dist: str, tmp_path: Path) -> None:
-    build = [
+    build: list[str | Path] = [
         sys.executable,
         "-m",
         "pip",
