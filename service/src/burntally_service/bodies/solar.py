@@ -3,7 +3,6 @@
 import functools
 import math
 from collections.abc import Mapping
-from importlib.resources import files
 from types import MappingProxyType
 from typing import Annotated, Literal
 
@@ -58,6 +57,9 @@ def catalogue() -> Mapping[str, Body]:
     >>> round(catalogue()["moon"].soi_radius, -6)
     66000000.0
     """
+    # Imported here, since a mission of invented bodies alone never reads the file.
+    from importlib.resources import files
+
     text = files("burntally_service").joinpath("data/bodies.toml").read_bytes()
     bodies: dict[str, Body] = {}
     for row in msgspec.toml.decode(text, type=_File).bodies:
