@@ -1,13 +1,12 @@
 """The two clients: one surface, one request path; they differ in how they send and in nothing else."""
 
-import asyncio
 import time
 from collections.abc import Mapping
 from types import TracebackType
 from typing import Any, Protocol, Self, TypeVar
 
 from burntally.client.errors import TimedOut
-from burntally.client.exchange import JSON, Body, answer_of, decoded
+from burntally.client.exchange import Body, answer_of, decoded
 from burntally.client.messages import Answer, Reply, Request
 from burntally.client.operations import (
     COMPUTE_PERFORMANCE,
@@ -23,6 +22,7 @@ from burntally.client.operations import (
 from burntally.client.retries import Outcome
 from burntally.client.settings import ClientSettings
 from burntally.model.budget import Budget
+from burntally.model.decode import JSON
 from burntally.model.design import Design
 from burntally.model.operations import (
     Bodies,
@@ -204,7 +204,7 @@ class Client:
     ) -> A:
         request = self._settings.request(operation, body, name=name)
         answer = answer_of(request, self.send(request, timeout_s=timeout_s))
-        return decoded(operation, request, answer)
+        return decoded(operation, answer)
 
 
 class AsyncClient:
@@ -323,7 +323,7 @@ class AsyncClient:
         outcome: Outcome = TimedOut("no time to send", request=request)
         attempt = retries.first()
         while attempt is not None:
-            await asyncio.sleep(attempt.pause_s)
+            await _pause(attempt.pause_s)
             outcome = await self._sender.send_once(request, attempt.timeout_s)
             attempt = retries.after(outcome)
         if isinstance(outcome, Reply):
@@ -347,4 +347,10 @@ class AsyncClient:
     ) -> A:
         request = self._settings.request(operation, body, name=name)
         answer = answer_of(request, await self.send(request, timeout_s=timeout_s))
-        return decoded(operation, request, answer)
+        return decoded(operation, answer)
+
+
+async def _pause(pause_s: float) -> None:
+    import asyncio  # costs more than the rest of this module, and a synchronous client has no use for it
+
+    await asyncio.sleep(pause_s)

@@ -57,6 +57,7 @@ __all__ = [
     "UncomputableError",
     "UnsupportedMedia",
     "Violation",
+    "refusal_of",
     "status_error",
 ]
 
@@ -253,7 +254,46 @@ _BY_STATUS: Final[dict[int, type[StatusError]]] = {
 _FIRST_SERVER_STATUS: Final = 500
 
 
+_STATUS_BY_CODE: Final = {
+    "invalid-request": 400,
+    "not-found": 404,
+    "inconsistent-request": 422,
+    "uncomputable": 422,
+}
+_INTERNAL: Final = 500
+
+
 def status_error(*, code: str | None, status: int) -> type[StatusError]:
     """Find the class of a problem: by its code, and by its status where a newer service has a newer code."""
     fallback = ServerFault if status >= _FIRST_SERVER_STATUS else StatusError
     return _BY_CODE.get(code or "") or _BY_STATUS.get(status, fallback)
+
+
+def refusal_of(fault: Exception, *, code: str | None = None, request: Request | None = None) -> StatusError:
+    """Find the error that a fault would be over HTTP.
+
+    Parameters
+    ----------
+    fault : Exception
+        Raised by the contract's border or by an installed service.
+    code : str or None
+        Code of the problem; absent: the fault's own.
+    request : Request or None
+        What was asked, where it got that far.
+
+    Returns
+    -------
+    StatusError
+        Of the class that the code stands for, with the fault as its cause; a fault that was not raised on purpose
+        is the service's.
+    """
+    own = fault.code if isinstance(fault, BurntallyError) else ServerFault.code
+    code = code or own
+    status = _STATUS_BY_CODE.get(code, _INTERNAL)
+    violations: Sequence[Violation] = getattr(fault, "violations", ())
+    message = f"the installed service failed: {fault!r}" if status == _INTERNAL else str(fault)
+    error = status_error(code=code, status=status)(
+        message, status=status, problem_code=code, violations=violations, request=request
+    )
+    error.__cause__ = fault
+    return error

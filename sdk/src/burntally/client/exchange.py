@@ -1,21 +1,20 @@
 """Requests built and replies read, without any I/O: both clients and both ways in share every line of it."""
 
 from collections.abc import Mapping
+from datetime import date, datetime
 from typing import Any, Final, TypeVar
 from urllib.parse import quote
 
 import msgspec
 
-from burntally.client.errors import ContractError, DecodingError, InvalidRequest, UncomputableError, status_error
+from burntally.client.errors import ContractError, DecodingError, UncomputableError, refusal_of, status_error
 from burntally.client.lenient import read_leniently
 from burntally.client.messages import Answer, Reply, Request
 from burntally.client.operations import Operation
 from burntally.model.decode import decode_builtins, encode
 from burntally.model.operations import Problem
 
-__all__ = ["JSON", "Body", "answer_of", "decoded", "request_for"]
-
-JSON: Final = "application/json"
+__all__ = ["Body", "answer_of", "decoded", "request_for"]
 
 Body = msgspec.Struct | Mapping[str, Any] | bytes
 """What a request may be given as: a struct, builtins as JSON would give them, or bytes as they stand."""
@@ -57,23 +56,25 @@ def request_for(
     """
     path = operation.path if name is None else operation.path.replace("{name}", quote(name, safe=""))
     try:
-        content = _content(operation, body)
-    except (ContractError, UncomputableError) as refusal:
-        # A number that is not finite breaks the contract of a request, whatever it is called in an answer.
-        raise InvalidRequest(
-            str(refusal), status=400, problem_code=ContractError.code, violations=refusal.violations
-        ) from refusal
+        content = _content(operation, body, headers["content-type"])
+    except ContractError as fault:
+        raise refusal_of(fault) from fault
+    except UncomputableError as fault:
+        # A number that is not finite is so called in an answer; in a request it breaks the contract.
+        raise refusal_of(fault, code=ContractError.code) from fault
     return Request(
         operation_id=operation.id, method=operation.method, path=path, body=content, name=name, headers=headers
     )
 
 
-def _content(operation: Operation[A], body: Body | None) -> bytes:
+def _content(operation: Operation[A], body: Body | None, media_type: str) -> bytes:
     if body is None or isinstance(body, bytes):
         return body or b""
     if isinstance(body, msgspec.Struct) or operation.request is None:
-        return encode(body)
-    return encode(decode_builtins(operation.request, msgspec.to_builtins(body, enc_hook=_with_unit)))
+        return encode(body, media_type=media_type)
+    # Dates stay dates: the border knows which of them are epochs.
+    plain = msgspec.to_builtins(body, builtin_types=(date, datetime), enc_hook=_with_unit)
+    return encode(decode_builtins(operation.request, plain), media_type=media_type)
 
 
 def _with_unit(quantity: Any) -> str:  # noqa: ANN401 -- whatever the caller put into the mapping
@@ -81,6 +82,8 @@ def _with_unit(quantity: Any) -> str:  # noqa: ANN401 -- whatever the caller put
 
     Told by its two attributes, so that the SDK need not import the library that made it.
     """
+    if not hasattr(quantity, "unit"):
+        raise NotImplementedError(f"a request cannot hold {type(quantity).__name__}")
     return f"{float(quantity.value)!r} {quantity.unit}"
 
 
@@ -106,7 +109,9 @@ def answer_of(request: Request, reply: Reply) -> Answer:
     """
     request_id = reply.headers.get(_REQUEST_ID)
     if reply.status < _FIRST_STATUS_BEYOND_SUCCESS:
-        return Answer(body=reply.body, status=reply.status, request_id=request_id, headers=reply.headers)
+        return Answer(
+            request=request, body=reply.body, status=reply.status, request_id=request_id, headers=reply.headers
+        )
     problem = _problem_of(reply)
     raise status_error(code=problem.code, status=reply.status)(
         _in_words(problem),
@@ -133,15 +138,13 @@ def _in_words(problem: Problem) -> str:
     return "; ".join(rows) or problem.detail or problem.title
 
 
-def decoded(operation: Operation[A], request: Request, answer: Answer) -> A:
+def decoded(operation: Operation[A], answer: Answer) -> A:
     """Decode the body of an answer into its struct; unknown fields are passed over.
 
     Parameters
     ----------
     operation : Operation
         What was asked for.
-    request : Request
-        What was sent, for the error.
     answer : Answer
         What came back.
 
@@ -161,7 +164,7 @@ def decoded(operation: Operation[A], request: Request, answer: Answer) -> A:
         reply = Reply(status=answer.status, body=answer.body, headers=answer.headers)
         raise DecodingError(
             f"the answer to {operation.id} cannot be read: {fault}",
-            request=request,
+            request=answer.request,
             response=reply,
             request_id=answer.request_id,
         ) from fault

@@ -1,6 +1,5 @@
 """The way in over HTTP. The HTTP library is imported when the first connection is wanted, not before."""
 
-import asyncio
 import time
 from typing import TYPE_CHECKING, Final
 
@@ -78,6 +77,8 @@ class AsyncHttpSender:
 
     async def send_once(self, request: Request, timeout_s: float) -> Outcome:
         """Send once; a fault of the connection is an outcome, so that the retry rule can weigh it."""
+        import asyncio
+
         import httpx2
 
         try:

@@ -1,22 +1,12 @@
 """The way in without HTTP: an installed service, found by its entry point and run on the same bytes."""
 
-import asyncio
-from collections.abc import Callable, Sequence
-from importlib.metadata import entry_points
+from collections.abc import Callable
 from typing import Any, Final
 
-from burntally.client.errors import (
-    BurntallyError,
-    ContractError,
-    ServerFault,
-    ServiceMissing,
-    StatusError,
-    Violation,
-    status_error,
-)
+from burntally.client.errors import InvalidRequest, NotAcceptable, ServiceMissing, UnsupportedMedia, refusal_of
 from burntally.client.messages import Reply, Request
 from burntally.client.retries import Outcome
-from burntally.model.decode import encode
+from burntally.model.decode import JSON, MSGPACK, encode
 
 __all__ = ["AnswerFunction", "AsyncInProcessSender", "InProcessSender", "installed"]
 
@@ -25,13 +15,7 @@ AnswerFunction = Callable[[str, bytes, str, str], bytes]
 
 _GROUP: Final = "burntally.service"
 _OK: Final = 200
-_INTERNAL: Final = 500
-_STATUS_BY_CODE: Final = {
-    "invalid-request": 400,
-    "not-found": 404,
-    "inconsistent-request": 422,
-    "uncomputable": 422,
-}
+_MEDIA_TYPES: Final = frozenset({JSON, MSGPACK})
 
 
 def installed(name: str) -> Any:  # noqa: ANN401 -- an entry point may be anything; its user knows what
@@ -52,6 +36,8 @@ def installed(name: str) -> Any:  # noqa: ANN401 -- an entry point may be anythi
     ServiceMissing
         No service is installed, or it does not offer that.
     """
+    from importlib.metadata import entry_points
+
     found = next(iter(entry_points(group=_GROUP, name=name)), None)
     if found is None:
         raise ServiceMissing(
@@ -80,10 +66,16 @@ class InProcessSender:
         """
         body = request.body if request.name is None else encode({"name": request.name})
         media_type, accept = request.headers["content-type"], request.headers["accept"]
+        if media_type not in _MEDIA_TYPES:
+            return UnsupportedMedia(f"{media_type} is not read", status=415, request=request)
+        if accept not in _MEDIA_TYPES:
+            return NotAcceptable(f"{accept} is not written", status=406, request=request)
         try:
             content = self._answer(request.operation_id, body, media_type, accept)
+        except RecursionError as fault:
+            return refusal_of(fault, code=InvalidRequest.code, request=request)
         except Exception as fault:  # noqa: BLE001 -- over HTTP any fault is a 500, so it is one here as well
-            return _error_of(fault, request)
+            return refusal_of(fault, request=request)
         return Reply(status=_OK, body=content, headers={"content-type": accept})
 
     def close(self) -> None:
@@ -104,27 +96,9 @@ class AsyncInProcessSender:
 
     async def send_once(self, request: Request, timeout_s: float) -> Outcome:
         """Answer one request."""
+        import asyncio
+
         return await asyncio.to_thread(self._sender.send_once, request, timeout_s)
 
     async def close(self) -> None:
         """Do nothing: there is nothing to let go."""
-
-
-def _error_of(fault: Exception, request: Request) -> StatusError:
-    """Find the error that the same fault is over HTTP."""
-    code, violations = _read(fault)
-    status = _STATUS_BY_CODE.get(code, _INTERNAL)
-    message = str(fault) if violations else f"the installed service failed: {fault!r}"
-    error = status_error(code=code, status=status)(
-        message, status=status, problem_code=code, violations=violations, request=request
-    )
-    error.__cause__ = fault
-    return error
-
-
-def _read(fault: Exception) -> tuple[str, Sequence[Violation]]:
-    if isinstance(fault, RecursionError):
-        return ContractError.code, ()
-    if isinstance(fault, BurntallyError):
-        return fault.code, getattr(fault, "violations", ())
-    return ServerFault.code, ()

@@ -47,6 +47,8 @@ class Answer:
 
     Parameters
     ----------
+    request : Request
+        What was asked.
     body : bytes
         The answer exactly as the service gave it.
     status : int
@@ -57,6 +59,7 @@ class Answer:
         Header fields, names in lower case.
     """
 
+    request: Request
     body: bytes
     status: int
     request_id: str | None = None

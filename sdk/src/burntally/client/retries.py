@@ -2,7 +2,6 @@
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from email.utils import parsedate_to_datetime
 from typing import Final
 
 from burntally.client.errors import ClientError, ConnectionFailed
@@ -55,6 +54,8 @@ def retry_after_s(outcome: Outcome, *, now_s: float) -> float | None:
         return None
     if asked.isascii() and asked.isdigit():
         return float(asked)
+    from email.utils import parsedate_to_datetime
+
     try:
         return max(0.0, parsedate_to_datetime(asked).timestamp() - now_s)
     except ValueError:

@@ -4,10 +4,11 @@ import time
 from dataclasses import dataclass
 from typing import TypeVar
 
-from burntally.client.exchange import JSON, Body, request_for
+from burntally.client.exchange import Body, request_for
 from burntally.client.messages import Request
 from burntally.client.operations import Operation
 from burntally.client.retries import Retries
+from burntally.model.decode import JSON
 
 __all__ = ["ClientSettings"]
 
