@@ -1,0 +1,53 @@
+"""Routes: one for each row of the operations table, made in one loop, and those that tell about the service."""
+
+import asyncio
+from collections.abc import Iterable
+from typing import Final
+
+import msgspec
+from litestar.enums import HttpMethod
+from litestar.handlers import HTTPRouteHandler
+from litestar.types import ASGIApp
+
+from burntally_service import operations
+from burntally_service.api.exchange import AnyRequest, open_exchange, read_body, reply
+from burntally_service.api.settings import Settings
+from burntally_service.operations import Operation
+
+__all__ = ["operation_routes"]
+
+# A closed form over a short body is done before a thread would have taken it over; a long body may hold up others.
+_INLINE_BODY_BYTES: Final = 16 * 1024
+
+
+def operation_routes(rows: Iterable[Operation], settings: Settings) -> list[HTTPRouteHandler]:
+    """Make the routes of the operations."""
+    return [_route(row, settings) for row in rows]
+
+
+def _route(operation: Operation, settings: Settings) -> HTTPRouteHandler:
+    async def handle(request: AnyRequest) -> ASGIApp:
+        exchange = open_exchange(request, operation)
+        asked = await _asked(request, operation, settings)
+        if operation.cost == "inline" and len(asked) <= _INLINE_BODY_BYTES:
+            told = operations.answer(operation.id, asked, exchange.media_type, exchange.accept)
+        else:
+            told = await asyncio.to_thread(operations.answer, operation.id, asked, exchange.media_type, exchange.accept)
+        return reply(operation, exchange, asked=asked, told=told)
+
+    methods = [HttpMethod.POST] if operation.takes_body else [HttpMethod.GET, HttpMethod.HEAD]
+    route = HTTPRouteHandler(
+        operation.path.replace("}", ":str}"),
+        http_method=methods,
+        name=operation.id,
+        operation_id=operation.id,
+        status_code=200,
+    )
+    return route(handle)
+
+
+async def _asked(request: AnyRequest, operation: Operation, settings: Settings) -> bytes:
+    """Return the request as the operation reads it: its body, or its path as one."""
+    if operation.takes_body:
+        return await read_body(request, settings.body_timeout_s)
+    return msgspec.json.encode(request.path_params) if operation.request else b""

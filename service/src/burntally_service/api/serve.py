@@ -1,0 +1,45 @@
+"""The server: one process that listens, found by entry point, so that the SDK need not know this package's name."""
+
+import signal
+from types import FrameType
+
+import uvicorn
+
+from burntally_service.api.app import create_app
+from burntally_service.api.settings import settings_from
+
+__all__ = ["serve"]
+
+
+def serve(host: str | None = None, port: int | None = None) -> None:
+    """Listen until a signal says stop; requests in flight are finished first.
+
+    Parameters
+    ----------
+    host
+        Address to listen on; None: the setting ``BURNTALLY_HOST``, which is this machine alone by default.
+    port
+        Port to listen on; None: the setting ``BURNTALLY_PORT``. 0: any free one, which the log tells.
+
+    Raises
+    ------
+    SettingsError
+        A setting cannot be read.
+    """
+    settings = settings_from(host=host, port=port)
+    # The server finishes its work on SIGTERM and then raises the signal once more; by default that would end the
+    # process as killed, and a stop that was asked for is no failure.
+    signal.signal(signal.SIGTERM, _already_stopped)
+    uvicorn.run(
+        create_app(settings),
+        host=settings.host,
+        port=settings.port,
+        log_level=settings.log_level,
+        access_log=False,
+        server_header=False,
+        timeout_graceful_shutdown=round(settings.drain_timeout_s),
+    )
+
+
+def _already_stopped(number: int, frame: FrameType | None) -> None:
+    """Take the signal that the server raises after it has stopped."""

@@ -1,0 +1,249 @@
+"""The table of operations: one row for each thing that the service computes or tells.
+
+Routes, the published contract and the in-process client are all read off it, so an operation that joins the table
+has them all. Nothing here knows HTTP, and importing it loads no numbers library: a row's function imports its room
+when it is first called.
+"""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from types import MappingProxyType
+from typing import Annotated, Any, Final, Literal
+
+from msgspec import Struct
+
+from burntally.model.budget import Budget
+from burntally.model.decode import decode, encode
+from burntally.model.design import Design
+from burntally.model.operations import (
+    Bodies,
+    BodyRecord,
+    Performance,
+    PerformanceRequest,
+    PresetRecord,
+    Presets,
+    TransferAnswer,
+    TransferRequest,
+)
+from burntally.model.scalars import Name, doc
+
+__all__ = ["OPERATIONS", "Named", "Operation", "answer", "operation_named"]
+
+JSON: Final = "application/json"
+
+
+class Named(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
+    """A request for the one thing that bears a name."""
+
+    name: Annotated[Name, doc("Name of what is asked for.")]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Operation:
+    """One row of the table.
+
+    Attributes
+    ----------
+    id
+        Stable name; the contract's `operationId`.
+    method, path
+        Where HTTP finds it. A path parameter is a field of the request.
+    summary, description
+        What it does, in the contract's words.
+    request
+        Type of the request; None: there is nothing to ask.
+    response
+        Type of the answer.
+    function
+        Takes the request, or nothing; returns the answer.
+    cost
+        `inline`: a closed form that may run where the request arrived; `thread`: slow enough to hold up others.
+    pure
+        Whether the answer is a function of the request alone.
+    """
+
+    id: str
+    method: Literal["GET", "POST"]
+    path: str
+    summary: str
+    description: str
+    request: type[Struct] | None
+    response: type[Struct]
+    function: Callable[..., Struct]
+    cost: Literal["inline", "thread"] = "inline"
+    pure: bool = True
+
+    @property
+    def takes_body(self) -> bool:
+        """Whether the request travels in the body, and not in the path."""
+        return self.method == "POST"
+
+    def call(self, request: Any) -> Struct:  # noqa: ANN401 - the row's own request type, which only the row knows
+        """Run the function on a decoded request."""
+        return self.function() if self.request is None else self.function(request)
+
+
+def _create_budget(design: Design) -> Budget:
+    from burntally_service.budget import draw_up
+
+    return draw_up(design)
+
+
+def _compute_performance(request: PerformanceRequest) -> Performance:
+    from burntally_service.vehicle.performance import performance_of
+
+    return performance_of(request)
+
+
+def _plan_transfer(request: TransferRequest) -> TransferAnswer:
+    from burntally_service.legs import transfer_of
+
+    return transfer_of(request)
+
+
+def _list_bodies() -> Bodies:
+    from burntally_service.bodies import list_bodies
+
+    return list_bodies()
+
+
+def _get_body(request: Named) -> BodyRecord:
+    from burntally_service.bodies import body_named
+
+    return body_named(request.name)
+
+
+def _list_rules() -> Presets:
+    from burntally_service.budget.presets import list_presets
+
+    return list_presets()
+
+
+def _get_rules(request: Named) -> PresetRecord:
+    from burntally_service.budget.presets import preset_named
+
+    return preset_named(request.name)
+
+
+_ROWS: Final = (
+    Operation(
+        id="create_budget",
+        method="POST",
+        path="/v1/budgets",
+        summary="Draw up the budget of a design",
+        description=(
+            "Says whether every burn that the mission calls for can be paid by the stages that are attached and lit at "
+            "that moment, with the reserve that the rules ask for: who pays, what is left, what breaks a rule, and "
+            "what would mend it. A design that does not close is an answer with findings, not an error."
+        ),
+        request=Design,
+        response=Budget,
+        function=_create_budget,
+    ),
+    Operation(
+        id="compute_performance",
+        method="POST",
+        path="/v1/performance",
+        summary="Tell what a vehicle gives, stage by stage",
+        description="Burns the stack from the bottom, each stage until its usable propellant is spent.",
+        request=PerformanceRequest,
+        response=Performance,
+        function=_compute_performance,
+    ),
+    Operation(
+        id="plan_transfer",
+        method="POST",
+        path="/v1/transfers",
+        summary="Plan one leg from a location, without a vehicle",
+        description="Tells the ideal manoeuvres of the leg, what other strategies would cost, and where it ends.",
+        request=TransferRequest,
+        response=TransferAnswer,
+        function=_plan_transfer,
+    ),
+    Operation(
+        id="list_bodies",
+        method="GET",
+        path="/v1/bodies",
+        summary="List the bodies of the solar catalogue",
+        description="Each body with its constants and their sources.",
+        request=None,
+        response=Bodies,
+        function=_list_bodies,
+    ),
+    Operation(
+        id="get_body",
+        method="GET",
+        path="/v1/bodies/{name}",
+        summary="Tell about one body of the solar catalogue",
+        description="The constants of the body and their sources.",
+        request=Named,
+        response=BodyRecord,
+        function=_get_body,
+    ),
+    Operation(
+        id="list_rules",
+        method="GET",
+        path="/v1/rules",
+        summary="List the presets of rules",
+        description="Published margin policies, as far as rules can hold them, each with its source.",
+        request=None,
+        response=Presets,
+        function=_list_rules,
+    ),
+    Operation(
+        id="get_rules",
+        method="GET",
+        path="/v1/rules/{name}",
+        summary="Tell about one preset of rules",
+        description="A published margin policy as rules, with its source and what the rules cannot hold of it.",
+        request=Named,
+        response=PresetRecord,
+        function=_get_rules,
+    ),
+)
+
+OPERATIONS: Final = MappingProxyType({row.id: row for row in _ROWS})
+"""Every operation by its id."""
+
+
+def operation_named(operation_id: str) -> Operation:
+    """Return the row of the table with this id; a LookupError tells which ids there are."""
+    try:
+        return OPERATIONS[operation_id]
+    except KeyError:
+        raise LookupError(f"no operation is called {operation_id!r}; there are {', '.join(OPERATIONS)}") from None
+
+
+def answer(operation_id: str, body: bytes, media_type: str = JSON, accept: str = JSON) -> bytes:
+    """Answer one request: decode it, compute, encode. This is all that every way in has in common.
+
+    Parameters
+    ----------
+    operation_id
+        Row of the table.
+    body
+        The request; empty where the operation asks nothing.
+    media_type
+        What the body is written in: `application/json` or `application/msgpack`.
+    accept
+        What the answer is to be written in, one of the same two.
+
+    Returns
+    -------
+    bytes
+        The answer, the same bytes for the same request whichever way it came in.
+
+    Raises
+    ------
+    ContractError
+        The body breaks the contract.
+    UncomputableError
+        It fits the contract and cannot be computed, or a result is not finite.
+    NotFoundError
+        Nothing bears the name that was asked for.
+    LookupError
+        There is no such operation.
+    """
+    operation = operation_named(operation_id)
+    request = None if operation.request is None else decode(operation.request, body, media_type=media_type)
+    return encode(operation.call(request), media_type=accept)
