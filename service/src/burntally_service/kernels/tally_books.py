@@ -1,0 +1,254 @@
+"""Opening the books: what is aboard before the first step."""
+
+from burntally_service.kernels.constants import G0
+from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, NOT_FLOWN, STAMP, Books, Tables
+
+__all__ = ["blank_books", "engines_flow", "load_up", "stage_mass", "wipe"]
+
+
+def blank_books(tables: Tables, lines: int) -> Books:
+    """Books of the right size for some tables, with nothing in them, for the gear of one value.
+
+    Parameters
+    ----------
+    tables : Tables
+        What will be tallied.
+    lines : int
+        How many lines of the ledger there is room for, [-].
+
+    Returns
+    -------
+    Books
+        Lists of zeros.
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_rows import Tables
+    >>> blank_books(Tables(*([],) * 14), 0).lines
+    []
+    """
+    loads, engines, stages = len(tables.loads), len(tables.engines), len(tables.stages)
+    branches, legs, payloads = len(tables.branches), len(tables.legs), len(tables.payloads)
+    sizes = (
+        *(loads,) * 10,
+        *(engines,) * 3,
+        len(tables.feeds),
+        stages + payloads,
+    )
+    floats = [[0.0] * size for size in sizes]
+    by_branch = [[0.0] * branches for _ in range(4)]
+    started = [0] * branches
+    reserves = [[0.0] * branches for _ in range(2)]
+    by_leg = [[0.0] * legs for _ in range(5)]
+    after = [[0.0] * legs for _ in range(4)]
+    marks = legs + branches
+    return Books(
+        *floats,
+        [NOT_FLOWN] * payloads,
+        [0] * stages,
+        list(range(stages)),
+        [-1] * stages,
+        *by_branch,
+        started,
+        *reserves,
+        [0.0] * (branches * max(1, legs)),
+        *by_leg,
+        [0] * (legs + branches),
+        [0] * legs,
+        [0] * legs,
+        *after,
+        [0.0] * marks,
+        [0.0] * marks,
+        [0.0] * marks,
+        [-1] * marks,
+        [0] * marks,
+        [0] * marks,
+        [0.0] * (lines * LINE_WIDTH),
+        [0, 0, -1],
+        [0.0, 0.0],
+    )
+
+
+def load_up(tables: Tables, books: Books) -> None:
+    """Fill the books with what is aboard before the first step.
+
+    Masses are allowable ones: basic by growth of each item by the system contingency.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        Changed: loads, engines, parts and the first branch.
+
+    Returns
+    -------
+    None
+        The books hold the start, masses in [kg].
+
+    References
+    ----------
+    .. [1] ANSI/AIAA S-120A-2015, terms basic, predicted and allowable mass.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_rows import Tables
+    >>> empty = Tables(*([],) * 14)
+    >>> load_up(empty, blank_books(empty, 0))
+    """
+    stages = len(tables.stages)
+    for row in tables.items:
+        books.part_mass[row.part] += row.mass * row.count * (1.0 + row.growth) * (1.0 + row.contingency)
+    for load in range(len(tables.loads)):
+        content = tables.loads[load]
+        residual = content.residual_fraction * content.mass
+        books.residual[load] = residual
+        books.held[load] = content.held_back
+        books.usable[load] = max(0.0, content.mass - residual - content.held_back)
+        books.stock[load] = content.mass
+    engines_flow(tables, books)
+    for payload in range(len(tables.payloads)):
+        rider = tables.payloads[payload]
+        if rider.aboard:
+            books.payload_on[payload] = rider.stage
+    if len(books.branch_mass) > 0:
+        books.branch_started[0] = 1
+        for stage in range(stages):
+            books.branch_mass[0] += stage_mass(tables, books, stage)
+
+
+def engines_flow(tables: Tables, books: Books) -> None:
+    r"""Mass flow of each engine, and of each of its feeds, at full thrust in vacuum.
+
+    .. math:: \dot m = n F / (g_0 I_{sp})
+
+    Parameters
+    ----------
+    tables : Tables
+        Engines and their feeds.
+    books : Books
+        Changed: `engine_flow` and `feed_flow`, [kg/s].
+
+    Returns
+    -------
+    None
+        The books hold the flows, [kg/s].
+
+    References
+    ----------
+    .. [1] Sutton, Biblarz, Rocket Propulsion Elements, 9th ed., sec. 2.1.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_rows import Tables
+    >>> empty = Tables(*([],) * 14)
+    >>> engines_flow(empty, blank_books(empty, 0))
+    """
+    for engine in range(len(tables.engines)):
+        row = tables.engines[engine]
+        flow = row.count * row.thrust / (row.isp * G0)
+        books.engine_flow[engine] = flow
+        parts = 0.0
+        for feed in range(row.first_feed, row.end_feed):
+            parts += tables.feeds[feed].parts
+        for feed in range(row.first_feed, row.end_feed):
+            books.feed_flow[feed] = flow * (tables.feeds[feed].parts / parts)
+
+
+def stage_mass(tables: Tables, books: Books, stage: int) -> float:
+    """Mass of a stage with its propellant and all that rides on it.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        The books as they stand.
+    stage : int
+        Index of the stage, [-].
+
+    Returns
+    -------
+    float
+        Mass, [kg].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_rows import StageRow, Tables
+    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 12)
+    >>> stage_mass(tables, blank_books(tables, 0), 0)
+    0.0
+    """
+    row = tables.stages[stage]
+    mass = books.part_mass[stage]
+    for load in range(row.first_load, row.end_load):
+        mass += books.usable[load] + books.held[load] + books.residual[load]
+    for payload in range(len(tables.payloads)):
+        if books.payload_on[payload] == stage:
+            mass += books.part_mass[len(tables.stages) + payload]
+    return mass
+
+
+def wipe(books: Books) -> None:
+    """Make used books blank again, in place.
+
+    Parameters
+    ----------
+    books : Books
+        Changed: everything but the lines, which are written over; what is to be added stays, [m/s].
+
+    Returns
+    -------
+    None
+        The books are as `blank_books` made them, masses 0 [kg].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_rows import Tables
+    >>> wipe(blank_books(Tables(*([],) * 14), 0))
+    """
+    for load in range(len(books.usable)):
+        books.burned[load] = books.lost[load] = books.boiled[load] = books.handed[load] = books.taken[load] = 0.0
+    for engine in range(len(books.used)):
+        books.used[engine] = books.lit_at[engine] = 0.0
+    for part in range(len(books.part_mass)):
+        books.part_mass[part] = 0.0
+    for payload in range(len(books.payload_on)):
+        books.payload_on[payload] = NOT_FLOWN
+    for stage in range(len(books.where)):
+        books.where[stage] = 0
+        books.order[stage] = stage
+        books.left_in[stage] = -1
+    for place in range(len(books.rule_sum)):
+        books.rule_sum[place] = 0.0
+    for branch in range(len(books.branch_mass)):
+        books.branch_mass[branch] = books.branch_clock[branch] = books.branch_charged[branch] = 0.0
+        books.branch_owed[branch] = books.reserve[branch] = books.reserve_owed[branch] = 0.0
+        books.branch_started[branch] = 0
+    _wipe_legs(books)
+    books.count[LINES] = books.count[STAMP] = 0
+
+
+def _wipe_legs(books: Books) -> None:
+    """Make the entries of the legs blank again."""
+    for leg in range(len(books.required)):
+        books.required[leg] = books.by_fraction[leg] = books.by_floor[leg] = books.by_fixed[leg] = 0.0
+        books.owed[leg] = 0.0
+        books.handover[leg] = 0
+        books.unlit[leg] = 0
+    for mark in range(len(books.cause)):
+        books.cause[mark] = 0
+        books.spare_stage[mark] = -1
+        books.spare_more[mark] = 0

@@ -1,0 +1,200 @@
+"""What can burn on a stage, how fast its loads go, and the lines in which the ledger tells it."""
+
+import math
+from typing import Final
+
+from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, STAMP, Books, Tables
+
+__all__ = ["DRY_FRACTION", "can_burn", "finish_line", "light_flow", "spare_of", "write_line"]
+
+DRY_FRACTION: Final = 1e-9
+"""A load below this share of what was loaded is dry (P7)."""
+
+
+def write_line(books: Books, kind: int, leg: int, part: int, entry: tuple[float, float, float, float, float]) -> None:
+    """Write one line of the ledger, if there is room; the count grows in any case.
+
+    Parameters
+    ----------
+    books : Books
+        Changed: `lines`, `count`.
+    kind, leg, part : int
+        What the line tells, of which leg and part, [-].
+    entry : tuple of float
+        Purpose [-], delta-v [m/s], mass that moves [kg], mass before [kg], time [s].
+
+    Returns
+    -------
+    None
+        The line is written, its mask and spare [kg] left blank.
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> books = blank_books(Tables(*([],) * 14), 1)
+    >>> write_line(books, 0, 0, 0, (0.0, 1.0, 2.0, 3.0, 4.0))
+    >>> books.lines[4:8]
+    [1.0, 2.0, 3.0, 4.0]
+    """
+    start = books.count[LINES] * LINE_WIDTH
+    books.count[LINES] += 1
+    lines = books.lines
+    if start + LINE_WIDTH <= len(lines):
+        lines[start] = float(kind)
+        lines[start + 1] = float(leg)
+        lines[start + 2] = float(part)
+        lines[start + 3] = entry[0]
+        lines[start + 4] = entry[1]
+        lines[start + 5] = entry[2]
+        lines[start + 6] = entry[3]
+        lines[start + 7] = entry[4]
+        lines[start + 8] = 0.0
+        lines[start + 9] = 0.0
+
+
+def can_burn(tables: Tables, books: Books, engine: int) -> bool:
+    """Tell whether an engine is lit or has an ignition left, and has propellant in every load that feeds it (P1)."""
+    row = tables.engines[engine]
+    if books.used[engine] >= row.max_ignitions and books.lit_at[engine] != books.count[STAMP]:
+        return False
+    for feed in range(row.first_feed, row.end_feed):
+        load = tables.feeds[feed].load
+        if books.usable[load] <= DRY_FRACTION * books.stock[load]:
+            return False
+    return True
+
+
+def light_flow(tables: Tables, books: Books, burner: int) -> tuple[float, float, int]:
+    """Thrust and mass flow of the engines of a burner that can burn together, and which they are.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        Changed: `flow` of the stage's loads, [kg/s].
+    burner : int
+        Index of the burner, [-].
+
+    Returns
+    -------
+    thrust : float
+        Sum of the thrusts in vacuum, [N]; 0 if none can burn.
+    mdot : float
+        Sum of the mass flows, [kg/s].
+    mask : int
+        Bit n set: the stage's engine n burns, [-].
+
+    References
+    ----------
+    .. [1] Sutton, Biblarz, Rocket Propulsion Elements, 9th ed., sec. 2.5 (total thrust over total flow).
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import BurnerRow, StageRow
+    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 4, [BurnerRow(0, 0, 0)], *([],) * 7)
+    >>> light_flow(tables, blank_books(tables, 0), 0)
+    (0.0, 0.0, 0)
+    """
+    row = tables.burners[burner]
+    stage = tables.stages[row.stage]
+    flow = books.flow
+    for load in range(stage.first_load, stage.end_load):
+        flow[load] = 0.0
+    thrust = 0.0
+    mdot = 0.0
+    mask = 0
+    for place in range(row.first_lit, row.end_lit):
+        engine = tables.lit[place]
+        if can_burn(tables, books, engine):
+            fitted = tables.engines[engine]
+            thrust += fitted.count * fitted.thrust
+            mdot += books.engine_flow[engine]
+            mask |= 1 << (engine - stage.first_engine)
+            for feed in range(fitted.first_feed, fitted.end_feed):
+                flow[tables.feeds[feed].load] += books.feed_flow[feed]
+    return thrust, mdot, mask
+
+
+def spare_of(tables: Tables, books: Books, stage: int) -> tuple[float, int]:
+    """Burning time until the first load runs dry at the flow of `light_flow`, and which load that is.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        The books, `flow` set for the stage.
+    stage : int
+        Index of the stage, [-].
+
+    Returns
+    -------
+    time : float
+        Time, [s]; infinite if nothing flows.
+    load : int
+        The load that runs dry first, [-]; -1 if nothing flows.
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import StageRow
+    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 12)
+    >>> spare_of(tables, blank_books(tables, 0), 0)
+    (inf, -1)
+    """
+    row = tables.stages[stage]
+    shortest = math.inf
+    first_dry = -1
+    for load in range(row.first_load, row.end_load):
+        if books.flow[load] > 0.0:
+            time = books.usable[load] / books.flow[load]
+            if time < shortest:
+                shortest = time
+                first_dry = load
+    return shortest, first_dry
+
+
+def finish_line(books: Books, mask: int, spare: float) -> None:
+    """Add to the line just written which engines burned, and what they could still burn.
+
+    Parameters
+    ----------
+    books : Books
+        Changed: `lines`.
+    mask : int
+        Bit n set: the stage's engine n burned, [-].
+    spare : float
+        Propellant that the same engines could still burn together, [kg].
+
+    Returns
+    -------
+    None
+        The line is complete, masses in [kg].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> books = blank_books(Tables(*([],) * 14), 1)
+    >>> write_line(books, 0, 0, 0, (0.0, 1.0, 2.0, 3.0, 4.0))
+    >>> finish_line(books, 3, 7.0)
+    >>> books.lines[8:]
+    [3.0, 7.0]
+    """
+    start = (books.count[LINES] - 1) * LINE_WIDTH
+    if start + LINE_WIDTH <= len(books.lines):
+        books.lines[start + 8] = float(mask)
+        books.lines[start + 9] = spare

@@ -1,0 +1,274 @@
+"""The rows that the tally reads and the books that it keeps: one name for each column.
+
+Rows are immutable and hold the numbers of a design and its plan as they were written. Books are lists of numbers that
+the tally fills. Compiled, rows become records of structured arrays and lists become arrays; the code is the same.
+Indices and flags are integers, quantities are floats in SI units.
+"""
+
+from collections.abc import Sequence
+from typing import Final, NamedTuple
+
+__all__ = [
+    "LINE_WIDTH",
+    "Books",
+    "BranchRow",
+    "BurnerRow",
+    "EngineRow",
+    "FeedRow",
+    "ItemRow",
+    "LegRow",
+    "LoadRow",
+    "PayloadRow",
+    "StageRow",
+    "StepRow",
+    "Tables",
+]
+
+# What a step does.
+BEGIN: Final = 0
+COAST: Final = 1
+BURN: Final = 2
+DRAW: Final = 3
+SEPARATE: Final = 4
+RELEASE_PAYLOAD: Final = 5
+RELEASE_PROPELLANT: Final = 6
+TAKE_PAYLOAD: Final = 7
+TAKE_PROPELLANT: Final = 8
+DOCK: Final = 9
+END: Final = 10
+START: Final = 11
+
+# What a burn is for.
+MANOEUVRE: Final = 0
+CONTINGENCY: Final = 1
+RESERVE: Final = 2
+UPKEEP: Final = 3
+ADDITION: Final = 4
+KILOGRAMS: Final = 5
+
+# What a line of the ledger tells.
+LINE_BURN: Final = 0
+LINE_DRAW: Final = 1
+LINE_IGNITION: Final = 2
+LINE_SEPARATION: Final = 3
+LINE_RELEASE: Final = 4
+LINE_HANDED: Final = 5
+LINE_TAKEN_PAYLOAD: Final = 6
+LINE_TAKEN: Final = 7
+LINE_BOILED: Final = 8
+LINE_ABSENT: Final = 9
+LINE_DOCKED: Final = 10
+
+# Columns of a line; `PART` is a burner, engine, stage, payload or load, as the kind of line asks.
+KIND: Final = 0
+LEG: Final = 1
+PART: Final = 2
+PURPOSE: Final = 3
+DELTA_V: Final = 4
+KG: Final = 5
+MASS: Final = 6
+TIME: Final = 7
+MASK: Final = 8
+SPARE: Final = 9
+LINE_WIDTH: Final = 10
+
+# Why something is owed.
+PAID: Final = 0
+GONE: Final = 1
+INERT: Final = 2
+NO_IGNITION: Final = 3
+DRY: Final = 4
+
+# Counters of the books.
+LINES: Final = 0
+STAMP: Final = 1
+ADD_AT: Final = 2
+
+NOT_FLOWN: Final = -1
+"""`Books.where` of a part that has left and that no branch flies."""
+
+
+class ItemRow(NamedTuple):
+    """One item of a mass list; `part` counts the stages, then the payloads."""
+
+    part: int
+    mass: float
+    count: int
+    growth: float
+    contingency: float
+
+
+class StageRow(NamedTuple):
+    """Where the loads and engines of a stage stand, and whether only a leg may separate it."""
+
+    first_load: int
+    end_load: int
+    first_engine: int
+    end_engine: int
+    by_leg: int
+
+
+class LoadRow(NamedTuple):
+    """One load [kg], its capacity infinite where none is stated; boil-off [kg/d]."""
+
+    stage: int
+    mass: float
+    capacity: float
+    residual_fraction: float
+    held_back: float
+    boiloff_per_day: float
+
+
+class EngineRow(NamedTuple):
+    """One kind of engine: thrust of each [N], isp [s], loss of each [kg]; ignitions infinite where not limited."""
+
+    count: int
+    thrust: float
+    isp: float
+    loss_per_ignition: float
+    max_ignitions: float
+    auxiliary: int
+    first_feed: int
+    end_feed: int
+
+
+class FeedRow(NamedTuple):
+    """One load that an engine draws on, with its parts by mass."""
+
+    load: int
+    parts: float
+
+
+class PayloadRow(NamedTuple):
+    """The stage that a payload rides on (-1: the topmost), and whether it is aboard at the start."""
+
+    stage: int
+    aboard: int
+
+
+class BurnerRow(NamedTuple):
+    """The engines that an account lights on one stage: a slice of `Tables.lit`."""
+
+    stage: int
+    first_lit: int
+    end_lit: int
+
+
+class BranchRow(NamedTuple):
+    """A branch: the stage that it is of (-1: main), its reserve, the step after its last."""
+
+    part: int
+    reserve_fraction: float
+    reserve_delta_v: float
+    end_step: int
+
+
+class LegRow(NamedTuple):
+    """A leg: its account, and what its contingency rule says.
+
+    `rule` is -1 without a rule. `settles` marks the last leg of a category's floor in its branch, `reserves` the leg
+    that the reserve of its branch follows, `charged` a leg that is charged a delta-v.
+    """
+
+    branch: int
+    account: int
+    charged: int
+    ascent: int
+    rule: int
+    fraction: float
+    floor: float
+    fixed: float
+    floor_on_category: int
+    settles: int
+    reserves: int
+
+
+class StepRow(NamedTuple):
+    """One thing to do, in order; `amount` is a delta-v [m/s], a mass [kg] or a time [s], as `op` asks."""
+
+    op: int
+    leg: int
+    part: int
+    amount: float
+    count: int
+    purpose: int
+
+
+class Tables(NamedTuple):
+    """Everything that the tally reads.
+
+    `burner_of` is indexed account * stages + stage (-1: none), `last_named` branch * stages + stage and holds the last
+    leg of the branch that names the stage as a payer (-1: none).
+    """
+
+    items: Sequence[ItemRow]
+    stages: Sequence[StageRow]
+    loads: Sequence[LoadRow]
+    engines: Sequence[EngineRow]
+    feeds: Sequence[FeedRow]
+    payloads: Sequence[PayloadRow]
+    burners: Sequence[BurnerRow]
+    lit: Sequence[int]
+    burner_of: Sequence[int]
+    last_named: Sequence[int]
+    boilers: Sequence[int]
+    branches: Sequence[BranchRow]
+    legs: Sequence[LegRow]
+    steps: Sequence[StepRow]
+
+
+class Books(NamedTuple):
+    """Everything that the tally keeps: by load, engine, part, stage, branch, leg, and the lines of the ledger.
+
+    Masses are in kg, speeds in m/s, times in s. `added` holds the delta-v that is added at the end of leg
+    ``count[ADD_AT]``, which is how slack is searched for.
+    """
+
+    usable: list[float]
+    held: list[float]
+    residual: list[float]
+    stock: list[float]
+    burned: list[float]
+    lost: list[float]
+    boiled: list[float]
+    handed: list[float]
+    taken: list[float]
+    flow: list[float]
+    used: list[float]
+    lit_at: list[float]
+    engine_flow: list[float]
+    feed_flow: list[float]
+    part_mass: list[float]
+    payload_on: list[int]
+    where: list[int]
+    order: list[int]
+    left_in: list[int]
+    branch_mass: list[float]
+    branch_clock: list[float]
+    branch_charged: list[float]
+    branch_owed: list[float]
+    branch_started: list[int]
+    reserve: list[float]
+    reserve_owed: list[float]
+    rule_sum: list[float]
+    required: list[float]
+    by_fraction: list[float]
+    by_floor: list[float]
+    by_fixed: list[float]
+    owed: list[float]
+    cause: list[int]
+    handover: list[int]
+    unlit: list[int]
+    mass_before: list[float]
+    mass_after: list[float]
+    clock_before: list[float]
+    clock_after: list[float]
+    spare: list[float]
+    spare_speed: list[float]
+    spare_mass: list[float]
+    spare_stage: list[int]
+    spare_mask: list[int]
+    spare_more: list[int]
+    lines: list[float]
+    count: list[int]
+    added: list[float]

@@ -1,0 +1,214 @@
+"""The stack: what separates, what starts a branch, and why an account can pay no more."""
+
+from burntally_service.kernels.tally_books import stage_mass
+from burntally_service.kernels.tally_flow import DRY_FRACTION, can_burn, write_line
+from burntally_service.kernels.tally_rows import (
+    DRY,
+    GONE,
+    INERT,
+    LINE_SEPARATION,
+    NO_IGNITION,
+    NOT_FLOWN,
+    Books,
+    Tables,
+)
+
+__all__ = ["cause_of", "detach", "shed"]
+
+
+def _is_spent(tables: Tables, books: Books, stage: int) -> bool:
+    """Tell whether a stage has main engines and none of them can burn (P3)."""
+    row = tables.stages[stage]
+    for engine in range(row.first_engine, row.end_engine):
+        if not tables.engines[engine].auxiliary and can_burn(tables, books, engine):
+            return False
+    return _has_main_engine(tables, stage)
+
+
+def _has_main_engine(tables: Tables, stage: int) -> bool:
+    """Tell whether a stage has an engine that is not auxiliary."""
+    row = tables.stages[stage]
+    for engine in range(row.first_engine, row.end_engine):
+        if not tables.engines[engine].auxiliary:
+            return True
+    return False
+
+
+def shed(tables: Tables, books: Books, leg: int, payer_position: int) -> None:
+    """Separate the spent stages at the bottom of the stack, with inert ones below them, before a payer burns.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        Changed where stages leave.
+    leg : int
+        The leg that is being paid, [-].
+    payer_position : int
+        Place of the payer in `Books.order`; only stages below it leave, [-].
+
+    Returns
+    -------
+    None
+        Masses in the books are in [kg].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rule P3; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import LegRow
+    >>> tables = Tables(*([],) * 12, [LegRow(0, 0, 1, 0, -1, 0.0, 0.0, 0.0, 0, 0, 0)], [])
+    >>> shed(tables, blank_books(tables, 0), 0, 0)
+    """
+    branch = tables.legs[leg].branch
+    stages = len(tables.stages)
+    highest = -1
+    for position in range(payer_position):
+        stage = books.order[position]
+        if books.where[stage] != branch:
+            continue
+        if tables.stages[stage].by_leg or tables.last_named[branch * stages + stage] > leg:
+            break
+        if _is_spent(tables, books, stage):
+            highest = position
+        elif tables.stages[stage].first_engine < tables.stages[stage].end_engine:
+            break
+    if highest >= 0:
+        detach(tables, books, leg, highest)
+
+
+def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
+    """Take everything up to a place in the stack out of a leg's branch; it starts the first branch that is of it.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        Changed: where the parts are, branch masses, what was held back.
+    leg : int
+        The leg in which it happens, [-].
+    highest : int
+        Place in `Books.order` of the highest stage that leaves, [-].
+
+    Returns
+    -------
+    None
+        Masses in the books are in [kg].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rule S; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import LegRow
+    >>> tables = Tables(*([],) * 12, [LegRow(0, 0, 1, 0, -1, 0.0, 0.0, 0.0, 0, 0, 0)], [])
+    >>> detach(tables, blank_books(tables, 0), 0, -1)
+    """
+    branch = tables.legs[leg].branch
+    target = _branch_of(tables, books, branch, highest)
+    for position in range(highest + 1):
+        stage = books.order[position]
+        if books.where[stage] != branch:
+            continue
+        mass = stage_mass(tables, books, stage)
+        books.where[stage] = target
+        books.left_in[stage] = leg
+        books.branch_mass[branch] -= mass
+        if target >= 0:
+            books.branch_mass[target] += mass
+        write_line(
+            books,
+            LINE_SEPARATION,
+            leg,
+            stage,
+            (float(target), 0.0, mass, books.branch_mass[branch] + mass, books.branch_clock[branch]),
+        )
+        row = tables.stages[stage]
+        for load in range(row.first_load, row.end_load):
+            books.usable[load] += books.held[load]
+            books.held[load] = 0.0
+
+
+def _branch_of(tables: Tables, books: Books, branch: int, highest: int) -> int:
+    """Start the first branch that is of a part at or below a place in the stack; -1 without one."""
+    for candidate in range(len(tables.branches)):
+        if books.branch_started[candidate]:
+            continue
+        part = tables.branches[candidate].part
+        for position in range(highest + 1):
+            if books.order[position] == part and books.where[part] == branch:
+                books.branch_started[candidate] = 1
+                books.branch_clock[candidate] = books.branch_clock[branch]
+                return candidate
+    return NOT_FLOWN
+
+
+def cause_of(tables: Tables, books: Books, leg: int) -> int:
+    """Why the account of a leg owes: all gone, nothing to burn, no ignition left, or dry.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        The books when the account could pay no more.
+    leg : int
+        Index of the leg, [-].
+
+    Returns
+    -------
+    int
+        The first cause that holds, [-].
+
+    References
+    ----------
+    .. [1] The project's findings `payer-gone`, `payer-inert`, `ignitions-exceeded`, `payer-dry`; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import LegRow
+    >>> tables = Tables(*([],) * 12, [LegRow(0, 0, 1, 0, -1, 0.0, 0.0, 0.0, 0, 0, 0)], [])
+    >>> cause_of(tables, blank_books(tables, 0), 0) == INERT
+    True
+    """
+    stages = len(tables.stages)
+    base = tables.legs[leg].account * stages
+    burners = 0
+    aboard = 0
+    for stage in range(stages):
+        burner = tables.burner_of[base + stage]
+        if burner < 0:
+            continue
+        burners += 1
+        if books.where[stage] == tables.legs[leg].branch:
+            aboard += 1
+            if _wants_ignition(tables, books, burner):
+                return NO_IGNITION
+    if burners == 0:
+        return INERT
+    return DRY if aboard > 0 else GONE
+
+
+def _wants_ignition(tables: Tables, books: Books, burner: int) -> bool:
+    """Tell whether an engine of a burner has propellant in all its feeds, and only lacks an ignition."""
+    row = tables.burners[burner]
+    for place in range(row.first_lit, row.end_lit):
+        engine = tables.lit[place]
+        if books.used[engine] < tables.engines[engine].max_ignitions:
+            continue
+        fed = True
+        fitted = tables.engines[engine]
+        for feed in range(fitted.first_feed, fitted.end_feed):
+            load = tables.feeds[feed].load
+            fed = fed and books.usable[load] > DRY_FRACTION * books.stock[load]
+        if fed:
+            return True
+    return False
