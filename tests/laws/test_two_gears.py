@@ -3,6 +3,7 @@
 import importlib
 import inspect
 import math
+import pkgutil
 import struct
 import typing
 from collections.abc import Callable, Iterator, Sequence
@@ -13,19 +14,18 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+import burntally_service.kernels as room
 from burntally_service.kernels._compile import compiled, records
 
-MODULES = ("manoeuvres", "orbits", "plane_split", "rocket")
+# The tally walks tables whose indices must fit each other, so not any double will do; it has laws of its own.
+MODULES = sorted(
+    found.name for found in pkgutil.iter_modules(room.__path__) if not found.name.startswith(("_", "tally", "books"))
+)
 
 NASTY = (0.0, -0.0, 5e-324, -5e-324, 2.3e-308, 1e-200, 1e200, 1.7e308, math.inf, -math.inf, math.nan)
-DOUBLES = st.one_of(
-    st.floats(),
-    st.sampled_from(NASTY),
-    # Figures of the trade, or the guards would refuse nearly every draw.
-    st.floats(1e-3, 1e12),
-    st.floats(0.0, 4.0),
-    st.floats(6e6, 5e7),
-)
+WILD = st.one_of(st.floats(), st.sampled_from(NASTY))
+# Figures of the trade, or the guards would refuse nearly every draw.
+TAME = st.one_of(st.floats(0.0, 4.0), st.floats(1e-3, 1e4), st.floats(6e6, 5e7), st.sampled_from((0.0, 4e14, math.pi)))
 
 
 def kernels() -> Iterator[Any]:
@@ -42,14 +42,14 @@ def row_fields(kind: Any) -> tuple[str, ...]:
     return getattr(kind, "_fields", ())
 
 
-def drawn(kind: Any) -> st.SearchStrategy[Any]:
+def drawn(kind: Any, doubles: st.SearchStrategy[float]) -> st.SearchStrategy[Any]:
     """Anything of a kernel's parameter type."""
     if kind is float:
-        return DOUBLES
+        return doubles
     if fields := row_fields(kind):
-        return st.builds(kind, *([DOUBLES] * len(fields)))
+        return st.builds(kind, *([doubles] * len(fields)))
     (item,) = typing.get_args(kind)
-    return st.lists(drawn(item), max_size=4)
+    return st.lists(drawn(item, doubles), max_size=4)
 
 
 def packed(kind: Any, value: Any) -> Any:
@@ -72,8 +72,8 @@ def test_gears_give_the_same_bits(kernel: Callable[..., Any]) -> None:
     kinds = [typing.get_type_hints(kernel)[name] for name in inspect.signature(kernel).parameters]
     twin = compiled(kernel)
 
-    @settings(max_examples=300, derandomize=True, database=None, deadline=None)
-    @given(st.tuples(*(drawn(kind) for kind in kinds)))
+    @settings(max_examples=200)
+    @given(st.one_of(*(st.tuples(*(drawn(kind, doubles) for kind in kinds)) for doubles in (WILD, TAME))))
     def check(arguments: tuple[Any, ...]) -> None:
         sent = [packed(kind, value) for kind, value in zip(kinds, arguments, strict=True)]
         assert bits(kernel(*arguments)) == bits(twin(*sent))
