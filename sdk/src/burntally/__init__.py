@@ -1,7 +1,7 @@
 """Delta-v and propellant budgets of multi-stage vehicles: the contract, the client and the commands."""
 
 from importlib import import_module
-from typing import TYPE_CHECKING, Any, Final
+from typing import TYPE_CHECKING, Final
 
 from burntally.version import __version__
 
@@ -126,14 +126,15 @@ _HOMES: Final = (
     "burntally.model.vehicle",
 )
 
+if not TYPE_CHECKING:  # with it, a checker would take any name
 
-def __getattr__(name: str) -> Any:  # noqa: ANN401 -- what checkers see are the imports above
-    """Load a public name on first use.
+    def __getattr__(name: str) -> object:
+        """Load a public name on first use.
 
-    Building the contract's types takes a tenth of a second, which `burntally --version` need not wait for.
-    """
-    if name in __all__:
-        for home in map(import_module, _HOMES):
-            if name in home.__all__:
-                return getattr(home, name)
-    raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
+        Building the contract's types takes a tenth of a second, which `burntally --version` need not wait for.
+        """
+        if name in __all__:
+            for home in map(import_module, _HOMES):
+                if name in home.__all__:
+                    return getattr(home, name)
+        raise AttributeError(f"module {__name__!r} has no attribute {name!r}")

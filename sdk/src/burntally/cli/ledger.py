@@ -75,10 +75,10 @@ def _sum_row(branch: BranchBook) -> _Row:
     losses = [loss for leg in branch.legs if (loss := _losses(leg)) is not None]
     return _Row(
         name="all legs",
-        required=sum(leg.required for leg in branch.legs),
+        required=sum(leg.required for leg in branch.legs) or None,
         losses=sum(losses) if losses else None,
         contingency=sum(_contingency(leg) for leg in branch.legs) or None,
-        charged=branch.charged,
+        charged=branch.charged or None,
         paid_by=_owed(branch.owed - (branch.reserve.owed if branch.reserve is not None else 0.0)),
     )
 

@@ -1,6 +1,6 @@
 """What each stage has, gave and keeps."""
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 
 from burntally.cli.columns import Column, grouped, line_up, mass_decimals
 from burntally.model.budget import Budget, LoadBook, StageBook
@@ -22,21 +22,21 @@ def stages_text(budget: Budget) -> str:
         A line for each stage, in the order in which they ignite.
     """
     stages = budget.stages
+    dry = [stage.dry_mass.allowable for stage in stages]
+    loaded = _over_loads(stages, lambda load: load.loaded)
+    in_kg = mass_decimals(max(loaded, default=0.0))
+    thrust_to_weight = [_thrust_to_weight(budget, stage.name) for stage in stages]
     return line_up(
         [
             Column(head="stage", cells=[_name(stage) for stage in stages], is_words=True),
-            _masses(stages, "allowable dry", lambda stage: stage.dry_mass.allowable),
-            _masses(stages, "loaded", lambda stage: _over_loads(stage, lambda load: load.loaded)),
-            _masses(stages, "burned", lambda stage: _over_loads(stage, lambda load: load.burned)),
-            _masses(stages, "left", lambda stage: _over_loads(stage, lambda load: load.left)),
-            _speeds(stages, "delta-v", lambda stage: stage.delta_v.capability),
-            _speeds(stages, "spent", lambda stage: stage.delta_v.spent),
-            _speeds(stages, "kept", lambda stage: stage.delta_v.left),
-            Column(
-                head="T/W at ignition",
-                unit="local g",
-                cells=[grouped(_thrust_to_weight(budget, stage.name), decimals=2) for stage in stages],
-            ),
+            _numbers("allowable dry", "kg", dry, decimals=mass_decimals(max(dry, default=0.0))),
+            _numbers("loaded", "kg", loaded, decimals=in_kg),
+            _numbers("burned", "kg", _over_loads(stages, lambda load: load.burned), decimals=in_kg),
+            _numbers("left", "kg", _over_loads(stages, lambda load: load.left), decimals=in_kg),
+            _numbers("delta-v", "m/s", [stage.delta_v.capability for stage in stages]),
+            _numbers("spent", "m/s", [stage.delta_v.spent for stage in stages]),
+            _numbers("kept", "m/s", [stage.delta_v.left for stage in stages]),
+            _numbers("T/W at ignition", "local g", thrust_to_weight, decimals=2),
         ]
     )
 
@@ -45,18 +45,12 @@ def _name(stage: StageBook) -> str:
     return stage.name if stage.count == 1 else f"{stage.name}, each of {stage.count}"
 
 
-def _masses(stages: list[StageBook], head: str, mass_of: Callable[[StageBook], float]) -> Column:
-    masses = [mass_of(stage) for stage in stages]
-    decimals = mass_decimals(max(map(abs, masses), default=0.0))
-    return Column(head=head, unit="kg", cells=[grouped(mass, decimals=decimals) for mass in masses])
+def _numbers(head: str, unit: str, numbers: Sequence[float | None], *, decimals: int = 1) -> Column:
+    return Column(head=head, unit=unit, cells=[grouped(number, decimals=decimals) for number in numbers])
 
 
-def _speeds(stages: list[StageBook], head: str, speed_of: Callable[[StageBook], float]) -> Column:
-    return Column(head=head, unit="m/s", cells=[grouped(speed_of(stage)) for stage in stages])
-
-
-def _over_loads(stage: StageBook, mass_of: Callable[[LoadBook], float]) -> float:
-    return sum(mass_of(load) for load in stage.loads)
+def _over_loads(stages: list[StageBook], mass_of: Callable[[LoadBook], float]) -> list[float]:
+    return [sum(mass_of(load) for load in stage.loads) for stage in stages]
 
 
 def _thrust_to_weight(budget: Budget, stage: str) -> float | None:

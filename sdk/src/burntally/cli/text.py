@@ -63,26 +63,27 @@ def verdict(budget: Budget) -> str:
     str
         One line without a newline.
     """
-    errors = sum(1 for finding in budget.findings if finding.severity == "error")
-    words = [_closing(closes=budget.closes, margin=budget.margin)]
+    words = [_closing(closes=budget.closes, margin=budget.margin, errors=_errors(budget))]
     if budget.limiting is not None:
-        words.append(f"{_hold(budget.margin)} {_place(budget, budget.limiting)}")
-    if errors:
-        words.append(f"{errors} error{'s' if errors > 1 else ''} below")
+        owes = budget.margin is not None and budget.margin < 0.0
+        words.append(f"{'first owed by' if owes else 'held down by'} {_place(budget, budget.limiting)}")
     return "; ".join(words)
 
 
-def _closing(*, closes: bool, margin: float | None) -> str:
+def _errors(budget: Budget) -> int:
+    return sum(1 for finding in budget.findings if finding.severity == "error")
+
+
+def _closing(*, closes: bool, margin: float | None, errors: int = 0) -> str:
     head = "closes" if closes else "does not close"
+    if errors and (margin is None or margin >= 0.0):
+        # It is not for want of propellant, so say at once what it is for.
+        head += f": {errors} error{'s' if errors > 1 else ''} below"
     if margin is None:
         return f"{head}, nothing to pay"
     # Below a metre per second a tenth would hide how near the line is.
-    speed = grouped(abs(margin), decimals=1 if abs(margin) >= 1.0 else 4)
+    speed = grouped(abs(margin)) if abs(margin) >= 1.0 else f"{abs(margin):.3g}"
     return f"{head}, {speed} m/s {'to spare' if margin >= 0.0 else 'short'}"
-
-
-def _hold(margin: float | None) -> str:
-    return "first owed by" if margin is not None and margin < 0.0 else "held down by"
 
 
 def _place(budget: Budget, limiting: Limiting) -> str:
@@ -97,12 +98,12 @@ def _place(budget: Budget, limiting: Limiting) -> str:
 
 
 def _branch_text(budget: Budget, branch: BranchBook) -> str:
+    if branch.end_mass is None:
+        return f"branch {branch.name}: never started"
     ledger = ledger_text(branch)
     if len(budget.branches) == 1:
         return ledger
-    started = branch.end_mass is not None
-    state = _closing(closes=branch.closes, margin=branch.margin) if started else "never started"
-    return f"branch {branch.name}: {state}\n{ledger}"
+    return f"branch {branch.name}: {_closing(closes=branch.closes, margin=branch.margin)}\n{ledger}"
 
 
 def _provenance_text(provenance: Provenance) -> str:

@@ -83,7 +83,7 @@ def _with_unit(quantity: Any) -> str:  # noqa: ANN401 -- whatever the caller put
     Told by its two attributes, so that the SDK need not import the library that made it.
     """
     if not hasattr(quantity, "unit"):
-        raise NotImplementedError(f"a request cannot hold {type(quantity).__name__}")
+        raise TypeError(f"a request cannot hold {type(quantity).__name__}")
     return f"{float(quantity.value)!r} {quantity.unit}"
 
 

@@ -7,13 +7,13 @@ from typing import Final, get_args
 
 from msgspec import inspect
 
-from burntally.model._trail import Report, Trail, kind_of, suggestion, tell
+from burntally.model._trail import Trail, kind_of, suggestion, tell
 from burntally.model.quantity import QuantityError, dimension_of, read, units_of
 from burntally.model.scalars import OR_UNIT_KEY, UNIT_KEY, CategoryPath, Epoch, Name, Pointer
 
 __all__ = ["Reader", "boolean", "choice_of", "count_of", "number_of", "text_of"]
 
-Reader = Callable[[object, Trail | None, Report], object]
+Reader = Callable[[object, Trail], object]
 """Reads the value at a trail; gives it back as the decoder wants it, or tells what is wrong with it."""
 
 Bounded = inspect.FloatType | inspect.IntType
@@ -53,18 +53,18 @@ def number_of(info: inspect.FloatType, extra: Mapping[str, object]) -> Reader:
     other = or_unit if isinstance(or_unit, str) else None
     expected = f"a number{_range(info)}{_units(unit, other)}"
 
-    def read_number(value: object, trail: Trail | None, report: Report) -> object:
+    def read_number(value: object, trail: Trail) -> object:
         number = value
         if isinstance(value, str) and unit is not None:
             try:
                 number = read(value, unit, other)
             except QuantityError as error:
-                tell(report, trail, str(error), read=value, expected=expected)
+                tell(trail, str(error), read=value, expected=expected)
                 return value
         if isinstance(number, bool) or not isinstance(number, int | float):
-            tell(report, trail, f"is {kind_of(value)} where a number is wanted", read=value, expected=expected)
+            tell(trail, f"is {kind_of(value)} where a number is wanted", read=value, expected=expected)
         elif (wrong := _outside(number, info)) is not None:
-            tell(report, trail, wrong, read=value, expected=expected)
+            tell(trail, wrong, read=value, expected=expected)
         return number
 
     return read_number
@@ -74,12 +74,12 @@ def count_of(info: inspect.IntType) -> Reader:
     """Make the reader of a whole number; `3.0` is one, as JSON Schema has it."""
     expected = f"a whole number{_range(info)}"
 
-    def read_count(value: object, trail: Trail | None, report: Report) -> object:
+    def read_count(value: object, trail: Trail) -> object:
         number = _whole(value)
         if isinstance(number, bool) or not isinstance(number, int):
-            tell(report, trail, "is not a whole number", read=value, expected=expected)
+            tell(trail, "is not a whole number", read=value, expected=expected)
         elif (wrong := _outside(number, info)) is not None:
-            tell(report, trail, wrong, read=value, expected=expected)
+            tell(trail, wrong, read=value, expected=expected)
         return number
 
     return read_count
@@ -91,11 +91,11 @@ def choice_of(info: inspect.LiteralType) -> Reader:
     names = tuple(str(value) for value in values)
     expected = " or ".join(repr(value) if isinstance(value, str) else str(value) for value in values)
 
-    def read_choice(value: object, trail: Trail | None, report: Report) -> object:
+    def read_choice(value: object, trail: Trail) -> object:
         number = _whole(value)
         if not any(number == known and type(number) is type(known) for known in values):
             near = suggestion(value, names) if isinstance(value, str) else ""
-            tell(report, trail, f"is none of the values that are allowed{near}", read=value, expected=expected)
+            tell(trail, f"is none of the values that are allowed{near}", read=value, expected=expected)
         return number
 
     return read_choice
@@ -109,23 +109,23 @@ def text_of(info: inspect.StrType) -> Reader:
     limits = f"{least} to {most} characters" if most is not None else "text"
     expected = f"{limits}: {_IN_WORDS.get(info.pattern, info.pattern)}" if info.pattern is not None else limits
 
-    def read_text(value: object, trail: Trail | None, report: Report) -> object:
+    def read_text(value: object, trail: Trail) -> object:
         text = _iso(value) if info.pattern == _EPOCH and isinstance(value, date) else value
         if not isinstance(text, str):
-            tell(report, trail, f"is {kind_of(value)} where text is wanted", read=value, expected=expected)
+            tell(trail, f"is {kind_of(value)} where text is wanted", read=value, expected=expected)
         elif len(text) < least or (most is not None and len(text) > most):
-            tell(report, trail, f"has {len(text)} characters", read=value, expected=expected)
+            tell(trail, f"has {len(text)} characters", read=value, expected=expected)
         elif (pattern is not None and not pattern.search(text)) or _is_broken(text):
-            tell(report, trail, "has characters or a form that are not allowed", read=value, expected=expected)
+            tell(trail, "has characters or a form that are not allowed", read=value, expected=expected)
         return text
 
     return read_text
 
 
-def boolean(value: object, trail: Trail | None, report: Report) -> object:
+def boolean(value: object, trail: Trail) -> object:
     """Read a yes or no."""
     if not isinstance(value, bool):
-        tell(report, trail, f"is {kind_of(value)} where true or false is wanted", read=value, expected="true or false")
+        tell(trail, f"is {kind_of(value)} where true or false is wanted", read=value, expected="true or false")
     return value
 
 

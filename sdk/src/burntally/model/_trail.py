@@ -7,14 +7,32 @@ from typing import Final
 from burntally.model._parse import Unbounded
 from burntally.model.errors import Violation
 
-__all__ = ["Report", "Trail", "kind_of", "pointer_to", "shown", "suggestion", "tell"]
+__all__ = ["Report", "ReportFullError", "Trail", "kind_of", "shown", "suggestion", "tell"]
 
-Trail = tuple["Trail | None", object]
+
+class ReportFullError(Exception):
+    """So much is wrong that reading on would serve nobody but who sends bodies to keep a server busy."""
+
+
+class Report:
+    """What is wrong with a value, as it is found; the root of every trail."""
+
+    def __init__(self) -> None:
+        self.violations: list[Violation] = []
+
+    def add(self, violation: Violation) -> None:
+        """Add a violation, and stop the reading where there are too many."""
+        self.violations.append(violation)
+        if len(self.violations) >= _MOST:
+            self.violations.append(Violation(pointer="", message=f"reading stopped after {_MOST} violations"))
+            raise ReportFullError
+
+
+Trail = Report | tuple["Trail", object]
 """The way from the root to a value, innermost first: cheap to lengthen, and rendered only where something is wrong."""
 
-Report = list[Violation]
-
 _LONGEST: Final = 60
+_MOST: Final = 200
 _KINDS: Final[dict[type, str]] = {
     bool: "a boolean",
     int: "a number",
@@ -26,21 +44,6 @@ _KINDS: Final[dict[type, str]] = {
     bytes: "binary data",
     type(None): "null",
 }
-
-
-def pointer_to(trail: Trail | None) -> str:
-    """Render a trail as a JSON Pointer (RFC 6901).
-
-    Examples
-    --------
-    >>> pointer_to(((None, "feeds"), "a/b"))
-    '/feeds/a~1b'
-    """
-    parts: list[str] = []
-    while trail is not None:
-        trail, part = trail
-        parts.append(str(part).replace("~", "~0").replace("/", "~1"))
-    return _writable("".join(f"/{part}" for part in reversed(parts)))
 
 
 def kind_of(value: object) -> str:
@@ -63,14 +66,12 @@ def shown(value: object) -> str:
     return kind_of(value)
 
 
-def tell(report: Report, trail: Trail | None, message: str, *, read: object = ..., expected: str | None = None) -> None:
-    """Add a violation to a report.
+def tell(trail: Trail, message: str, *, read: object = ..., expected: str | None = None) -> None:
+    """Add a violation to the report that a trail starts from.
 
     Parameters
     ----------
-    report : list of Violation
-        What is wrong so far.
-    trail : tuple or None
+    trail : Report or tuple
         Where it is wrong.
     message : str
         What is wrong.
@@ -79,8 +80,13 @@ def tell(report: Report, trail: Trail | None, message: str, *, read: object = ..
     expected : str, optional
         What is wanted.
     """
+    parts: list[str] = []
+    while not isinstance(trail, Report):
+        trail, part = trail
+        parts.append("/" + str(part).replace("~", "~0").replace("/", "~1"))
+    pointer = _writable("".join(reversed(parts)))
     seen = None if read is ... else shown(read)
-    report.append(Violation(pointer=pointer_to(trail), message=message, read=seen, expected=expected))
+    trail.add(Violation(pointer=pointer, message=message, read=seen, expected=expected))
 
 
 def suggestion(name: object, names: tuple[str, ...]) -> str:

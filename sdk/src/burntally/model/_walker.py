@@ -6,6 +6,7 @@ unit. What it hands back are plain values again: the decoder has the last word o
 """
 
 from collections.abc import Callable, Iterator, Mapping
+from contextlib import suppress
 from functools import cache
 from typing import Final
 
@@ -13,13 +14,14 @@ from msgspec import inspect
 
 from burntally.model._leaves import Reader, boolean, choice_of, count_of, number_of, text_of
 from burntally.model._parse import Doubled, Unbounded
-from burntally.model._trail import Report, Trail, kind_of, suggestion, tell
+from burntally.model._trail import Report, ReportFullError, Trail, kind_of, suggestion, tell
+from burntally.model.errors import Violation
 from burntally.model.scalars import UNIT_KEY
 
 __all__ = ["walk"]
 
 
-def walk(type_: object, value: object) -> tuple[object, Report]:
+def walk(type_: object, value: object) -> tuple[object, list[Violation]]:
     """Read a plain value as a type of the contract.
 
     Parameters
@@ -34,8 +36,10 @@ def walk(type_: object, value: object) -> tuple[object, Report]:
     tuple
         The same values with every quantity as a number, and the violations. With violations, the values mean nothing.
     """
-    report: Report = []
-    return _reader_of(type_)(value, None, report), report
+    report = Report()
+    with suppress(ReportFullError):
+        value = _reader_of(type_)(value, report)
+    return value, report.violations
 
 
 @cache
@@ -55,13 +59,13 @@ def _made(info: inspect.Type, extra: Mapping[str, object]) -> Reader:
     return _as_it_is if make is None else make(info)
 
 
-def _as_it_is(value: object, _trail: Trail | None, _report: Report) -> object:
+def _as_it_is(value: object, _trail: Trail) -> object:
     return value
 
 
-def _null(value: object, trail: Trail | None, report: Report) -> object:
+def _null(value: object, trail: Trail) -> object:
     if value is not None:
-        tell(report, trail, f"is {kind_of(value)} where null is wanted", read=value, expected="null")
+        tell(trail, f"is {kind_of(value)} where null is wanted", read=value, expected="null")
     return value
 
 
@@ -72,39 +76,39 @@ def _struct_of(info: inspect.StructType) -> Reader:
     names = tuple(readers)
     known = f"fields {', '.join(names)}"
 
-    def read_stranger(key: object, value: object, trail: Trail, report: Report) -> object:
+    def read_stranger(key: object, value: object, trail: Trail) -> object:
         if key == info.tag_field:
             if value != info.tag:
-                tell(report, trail, "is another kind than the one that is wanted", read=value, expected=repr(info.tag))
+                tell(trail, "is another kind than the one that is wanted", read=value, expected=repr(info.tag))
         elif info.forbid_unknown_fields:
             message = f"is not a field of {cls.__name__}{suggestion(key, names)}"
-            tell(report, trail, message, read=value, expected=known)
+            tell(trail, message, read=value, expected=known)
         return value
 
-    def read_struct(value: object, trail: Trail | None, report: Report) -> object:
+    def read_struct(value: object, trail: Trail) -> object:
         if not isinstance(value, dict):
-            tell(report, trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=known)
+            tell(trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=known)
             return value
-        _tell_doubled(value, trail, report)
+        _tell_doubled(value, trail)
         made = {}
         for key, inner in value.items():
             reader = readers.get(key)
             if reader is None:
-                made[key] = read_stranger(key, inner, (trail, key), report)
+                made[key] = read_stranger(key, inner, (trail, key))
             else:
-                made[key] = reader(inner, (trail, key), report)
+                made[key] = reader(inner, (trail, key))
         for name in required:
             if name not in value:
-                tell(report, (trail, name), "is missing", expected=f"field {name} of {cls.__name__}")
+                tell((trail, name), "is missing", expected=f"field {name} of {cls.__name__}")
         return made
 
     return read_struct
 
 
-def _tell_doubled(value: dict[object, object], trail: Trail | None, report: Report) -> None:
+def _tell_doubled(value: dict[object, object], trail: Trail) -> None:
     if isinstance(value, Doubled):
         for name in value.doubled:
-            tell(report, (trail, name), "is written more than once in the same object", expected="each field once")
+            tell((trail, name), "is written more than once in the same object", expected="each field once")
 
 
 def _tagged_of(infos: list[inspect.StructType]) -> Reader:
@@ -113,21 +117,21 @@ def _tagged_of(infos: list[inspect.StructType]) -> Reader:
     kinds = tuple(str(tag) for tag in readers)
     expected = f"one of {', '.join(kinds)}"
 
-    def read_tagged(value: object, trail: Trail | None, report: Report) -> object:
+    def read_tagged(value: object, trail: Trail) -> object:
         if not isinstance(value, dict):
             wanted = f"an object with {tag_field}, {expected}"
-            tell(report, trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=wanted)
+            tell(trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=wanted)
             return value
         if tag_field not in value:
-            tell(report, (trail, tag_field), "is missing", expected=expected)
+            tell((trail, tag_field), "is missing", expected=expected)
             return value
         tag = value[tag_field]
         reader = readers.get(tag) if isinstance(tag, str) else None
         if reader is None:
             message = f"is no {tag_field} that is known{suggestion(tag, kinds)}"
-            tell(report, (trail, tag_field), message, read=tag, expected=expected)
+            tell((trail, tag_field), message, read=tag, expected=expected)
             return value
-        return reader(value, trail, report)
+        return reader(value, trail)
 
     return read_tagged
 
@@ -137,13 +141,14 @@ def _list_of(info: inspect.ListType) -> Reader:
     least, most = info.min_length or 0, info.max_length
     expected = f"a list of {least} to {most}" if most is not None else "a list"
 
-    def read_list(value: object, trail: Trail | None, report: Report) -> object:
+    def read_list(value: object, trail: Trail) -> object:
         if not isinstance(value, list | tuple):
-            tell(report, trail, f"is {kind_of(value)} where a list is wanted", read=value, expected=expected)
+            tell(trail, f"is {kind_of(value)} where a list is wanted", read=value, expected=expected)
             return value
         if len(value) < least or (most is not None and len(value) > most):
-            tell(report, trail, f"has {len(value)} entries", read=value, expected=expected)
-        return [read_item(item, (trail, index), report) for index, item in enumerate(value)]
+            tell(trail, f"has {len(value)} entries", read=value, expected=expected)
+            return value
+        return [read_item(item, (trail, index)) for index, item in enumerate(value)]
 
     return read_list
 
@@ -153,16 +158,17 @@ def _dict_of(info: inspect.DictType) -> Reader:
     least, most = info.min_length or 0, info.max_length
     expected = f"an object of {least} to {most} entries" if most is not None else "an object"
 
-    def read_dict(value: object, trail: Trail | None, report: Report) -> object:
+    def read_dict(value: object, trail: Trail) -> object:
         if not isinstance(value, dict):
-            tell(report, trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=expected)
+            tell(trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=expected)
             return value
-        _tell_doubled(value, trail, report)
+        _tell_doubled(value, trail)
         if len(value) < least or (most is not None and len(value) > most):
-            tell(report, trail, f"has {len(value)} entries", read=value, expected=expected)
+            tell(trail, f"has {len(value)} entries", read=value, expected=expected)
+            return value
         for key in value:
-            read_key(key, (trail, key), report)
-        return {key: read_value(inner, (trail, key), report) for key, inner in value.items()}
+            read_key(key, (trail, key))
+        return {key: read_value(inner, (trail, key)) for key, inner in value.items()}
 
     return read_dict
 
@@ -177,8 +183,8 @@ def _union_of(info: inspect.UnionType, extra: Mapping[str, object]) -> Reader:
     # Where none fits, the first option tells what it wants.
     fallback = options[0][1]
 
-    def read_union(value: object, trail: Trail | None, report: Report) -> object:
-        return by_kind.get(type(value), fallback)(value, trail, report)
+    def read_union(value: object, trail: Trail) -> object:
+        return by_kind.get(type(value), fallback)(value, trail)
 
     return read_union
 

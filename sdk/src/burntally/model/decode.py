@@ -5,13 +5,14 @@ Contract fields are floats in the units of the contract; quantities as text exis
 
 import re
 from collections.abc import Callable
+from contextlib import suppress
 from typing import Any, Final, NamedTuple, TypeVar
 
 import msgspec
 
 from burntally.model import _parse
 from burntally.model._msgpack import msgpack_values
-from burntally.model._trail import Report, Trail, tell
+from burntally.model._trail import Report, ReportFullError, Trail, tell
 from burntally.model._walker import walk
 from burntally.model.checks import violations
 from burntally.model.errors import ContractError, InconsistentError, UncomputableError
@@ -87,9 +88,9 @@ def decode_builtins(type_: type[T], parsed: object) -> T:
     """
     if _parse.depth_of(parsed) > _parse.DEEPEST:
         raise _parse.too_deep()
-    plain, report = walk(type_, parsed)
-    if report:
-        raise ContractError(report)
+    plain, found = walk(type_, parsed)
+    if found:
+        raise ContractError(found)
     try:
         value = msgspec.convert(plain, type_)
     except msgspec.ValidationError as error:
@@ -143,10 +144,11 @@ def encode(value: object, *, media_type: str = JSON) -> bytes:
     wire = _wire_of(media_type)
     data = wire.write(value)
     if wire.may_hold_non_finite(data):
-        report: Report = []
-        _tell_non_finite(msgspec.to_builtins(value), None, report)
-        if report:
-            raise UncomputableError(report)
+        report = Report()
+        with suppress(ReportFullError):
+            _tell_non_finite(msgspec.to_builtins(value), report)
+        if report.violations:
+            raise UncomputableError(report.violations)
     return data
 
 
@@ -217,12 +219,12 @@ def _msgpack_in_full(data: bytes) -> object:
     return msgpack_values(data) if is_doubtful else parsed
 
 
-def _tell_non_finite(value: object, trail: Trail | None, report: Report) -> None:
+def _tell_non_finite(value: object, trail: Trail) -> None:
     if isinstance(value, float) and value - value != 0.0:
-        tell(report, trail, "is not a finite number", read=value)
+        tell(trail, "is not a finite number", read=value)
     elif isinstance(value, dict | list):
         for key, inner in value.items() if isinstance(value, dict) else enumerate(value):
-            _tell_non_finite(inner, (trail, key), report)
+            _tell_non_finite(inner, (trail, key))
 
 
 # NaN and infinity are written as `null` in JSON; in MessagePack they are doubles of the highest exponent. What merely
