@@ -243,7 +243,9 @@ def coasting_time(mu: float, r_peri: float, r_apo: float, nu_i: float, nu_f: flo
     mean_anom = _mean_anomaly(r_peri / r_apo, nu_f) - _mean_anomaly(r_peri / r_apo, nu_i)
     if mean_anom < 0.0:
         mean_anom += _TWO_PI
-    return mean_anom / mean_motion(mu, 0.5 * r_peri + 0.5 * r_apo)
+    rate = mean_motion(mu, 0.5 * r_peri + 0.5 * r_apo)
+    # On an orbit too wide for a double the rate is nothing, which Python refuses to divide by.
+    return mean_anom / rate if rate > 0.0 else math.nan
 
 
 def apse_turn(mu: float, r_peri: float, r_apo: float, angle: float) -> float:
