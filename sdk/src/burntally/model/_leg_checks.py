@@ -110,8 +110,7 @@ def _check_known(name: str, trail: Trail, *, known: Collection[str], what: str) 
 def _check_each(names: list[str], trail: Trail, *, known: Collection[str], what: str) -> None:
     for index, name in enumerate(names):
         _check_known(name, (trail, index), known=known, what=what)
-    if len(names) > 1:
-        check_unique([((trail, index), name) for index, name in enumerate(names)], within=f"{what} of the list")
+    check_unique(names, trail, within="entry of the list")
 
 
 def _check_lit(leg: ChargedLeg, trail: Trail, parts: Parts | None) -> None:

@@ -1,13 +1,13 @@
 """Rules for a mission that a schema cannot state: where it starts, and which branches it has."""
 
-from collections.abc import Iterator
+from collections.abc import Collection, Iterator, Sequence
 
 from burntally.model._leg_checks import Parts, check_date, check_leg, check_size
 from burntally.model._system_checks import check_system
 from burntally.model._trail import Trail, suggestion, tell
 from burntally.model._vehicle_checks import check_unique
 from burntally.model.mission import Hyperbola, Leg, Location, Mission, OrbitLocation, TakeOn
-from burntally.model.vehicle import Payload, Vehicle
+from burntally.model.vehicle import Payload, Stage
 
 __all__ = ["check_mission", "check_start", "taken_on"]
 
@@ -20,7 +20,7 @@ def taken_on(mission: Mission, trail: Trail) -> Iterator[tuple[Trail, Payload]]:
                 yield ((place, index), "payload"), leg.payload
 
 
-def check_mission(mission: Mission, trail: Trail, *, vehicle: Vehicle) -> None:
+def check_mission(mission: Mission, trail: Trail, *, stages: Sequence[Stage], payloads: Collection[str]) -> None:
     """Check a mission, within itself and against the vehicle that flies it.
 
     Parameters
@@ -29,18 +29,19 @@ def check_mission(mission: Mission, trail: Trail, *, vehicle: Vehicle) -> None:
         The mission.
     trail : Report or tuple
         Where it stands.
-    vehicle : Vehicle
-        The vehicle, whose parts the legs name.
+    stages : sequence of Stage
+        Stages of the vehicle.
+    payloads : collection of str
+        Payloads of the vehicle, and those that legs take on.
     """
     if mission.system is not None:
         check_system(mission.system, (trail, "system"))
     if mission.epoch is not None:
         check_date(mission.epoch, (trail, "epoch"))
     check_start(mission.start, (trail, "start"))
-    payloads = [payload.name for payload in vehicle.payloads]
     parts = Parts(
-        stages={stage.name: stage for stage in vehicle.stages},
-        payloads={*payloads, *(payload.name for _, payload in taken_on(mission, trail))},
+        stages={stage.name: stage for stage in stages},
+        payloads=payloads,
         branches={branch.of for branch in mission.branches},
         has_epoch=mission.epoch is not None,
     )
@@ -80,10 +81,11 @@ def _rows(mission: Mission, trail: Trail) -> Iterator[tuple[Trail, list[Leg]]]:
 
 
 def _check_branches(mission: Mission, trail: Trail, parts: Parts) -> None:
-    places = [((((trail, "branches"), index), "of"), branch.of) for index, branch in enumerate(mission.branches)]
-    check_unique(places, within="branch of the mission")
-    for place, name in places:
+    place: Trail = (trail, "branches")
+    names = [branch.of for branch in mission.branches]
+    check_unique(names, place, within="branch of the mission", field="of")
+    for index, name in enumerate(names):
         if name not in parts.stages:
             known = tuple(parts.stages)
             message = f"is no stage of the vehicle{suggestion(name, known)}"
-            tell(place, message, read=name, expected="the name of a stage")
+            tell(((place, index), "of"), message, read=name, expected="the name of a stage")

@@ -21,10 +21,7 @@ def check_system(system: System, trail: Trail) -> None:
     """
     place: Trail = (trail, "bodies")
     named = {body.name: body for body in system.bodies}
-    check_unique(
-        [(((place, index), "name"), body.name) for index, body in enumerate(system.bodies)],
-        within="body of the system",
-    )
+    check_unique([body.name for body in system.bodies], place, within="body of the system", field="name")
     roots_left = 0 if system.base == "solar" else 1
     for index, body in enumerate(system.bodies):
         if body.parent is None:

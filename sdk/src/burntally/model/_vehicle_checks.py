@@ -1,6 +1,6 @@
 """Rules for a vehicle that a schema cannot state."""
 
-from collections.abc import Iterable
+from collections.abc import Sequence
 
 from burntally.model._trail import Trail, suggestion, tell
 from burntally.model.vehicle import Engine, Load, MassItem, Payload, Stage, Vehicle
@@ -10,12 +10,28 @@ __all__ = ["check_masses", "check_on", "check_unique", "check_vehicle"]
 _ROUNDING = 1e-9
 
 
-def check_unique(names: Iterable[tuple[Trail, object]], *, within: str) -> None:
-    """Tell each name that another of the same set bears already."""
+def check_unique(names: Sequence[object], trail: Trail, *, within: str, field: str | None = None) -> None:
+    """Tell each name of a list that an earlier entry bears already.
+
+    Parameters
+    ----------
+    names : sequence
+        Names, or whatever must differ, in the order of the list.
+    trail : Report or tuple
+        Where the list stands.
+    within : str
+        What an entry is, for the message.
+    field : str, optional
+        The entry's field that holds the name; absent: the entry itself.
+    """
+    if len(set(names)) == len(names):
+        return
     seen: set[object] = set()
-    for trail, name in names:
+    for index, name in enumerate(names):
         if name in seen:
-            tell(trail, f"is the name of another {within}", read=name, expected="a name of its own")
+            entry: Trail = (trail, index)
+            place = entry if field is None else (entry, field)
+            tell(place, f"is the same as in another {within}", read=name, expected="each of them once")
         seen.add(name)
 
 
@@ -66,12 +82,8 @@ def _check_stage(stage: Stage, trail: Trail, *, residual_fraction: float) -> Non
     check_masses(stage.dry_mass, (trail, "dry_mass"))
     loads: Trail = (trail, "propellants")
     engines: Trail = (trail, "engines")
-    if len(stage.propellants) > 1:
-        named = [(((loads, index), "name"), load.name) for index, load in enumerate(stage.propellants)]
-        check_unique(named, within="load of the stage")
-    if len(stage.engines) > 1:
-        named = [(((engines, index), "name"), engine.name) for index, engine in enumerate(stage.engines)]
-        check_unique(named, within="engine of the stage")
+    check_unique([load.name for load in stage.propellants], loads, within="load of the stage", field="name")
+    check_unique([engine.name for engine in stage.engines], engines, within="engine of the stage", field="name")
     if stage.engines and not stage.propellants:
         message = f"is missing: {stage.name!r} has engines and nothing that they could burn"
         tell(loads, message, expected="a load, or a stage without engines")

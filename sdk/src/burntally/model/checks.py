@@ -1,5 +1,6 @@
 """Rules of the contract that a schema cannot state: names that refer, fields that exclude each other, dates, trees."""
 
+from collections.abc import Sequence
 from contextlib import suppress
 
 from burntally.model._leg_checks import check_leg
@@ -11,6 +12,7 @@ from burntally.model.design import Design
 from burntally.model.errors import Violation
 from burntally.model.operations import PerformanceRequest, TransferRequest
 from burntally.model.rules import Rules
+from burntally.model.vehicle import Payload, Vehicle
 
 __all__ = ["violations"]
 
@@ -44,21 +46,19 @@ def violations(value: object) -> list[Violation]:
 def _check_design(design: Design, trail: Trail) -> None:
     vehicle: Trail = (trail, "vehicle")
     mission: Trail = (trail, "mission")
-    residual_fraction = design.rules.residual_fraction or 0.0
-    check_vehicle(design.vehicle, vehicle, residual_fraction=residual_fraction)
-    aboard = [
-        *_named(design, vehicle),
-        *(((place, "name"), load.name) for place, load in taken_on(design.mission, mission)),
-    ]
-    _check_names(aboard)
-    check_mission(design.mission, mission, vehicle=design.vehicle)
+    taken = list(taken_on(design.mission, mission))
+    payloads = [payload.name for payload in design.vehicle.payloads]
+    payloads += [payload.name for _, payload in taken]
+    check_vehicle(design.vehicle, vehicle, residual_fraction=design.rules.residual_fraction or 0.0)
+    _check_names(design.vehicle, vehicle, taken=taken)
+    check_mission(design.mission, mission, stages=design.vehicle.stages, payloads=payloads)
     _check_rules(design.rules, (trail, "rules"))
 
 
 def _check_performance(request: PerformanceRequest, trail: Trail) -> None:
     vehicle: Trail = (trail, "vehicle")
     check_vehicle(request.vehicle, vehicle, residual_fraction=request.rules.residual_fraction or 0.0)
-    _check_names(_named(request, vehicle))
+    _check_names(request.vehicle, vehicle, taken=[])
     _check_rules(request.rules, (trail, "rules"))
 
 
@@ -69,25 +69,22 @@ def _check_transfer(request: TransferRequest, trail: Trail) -> None:
     check_leg(request.leg, (trail, "leg"), parts=None)
 
 
-def _named(request: Design | PerformanceRequest, trail: Trail) -> list[tuple[Trail, object]]:
-    vehicle = request.vehicle
-    return [
-        *(((((trail, "stages"), index), "name"), stage.name) for index, stage in enumerate(vehicle.stages)),
-        *(((((trail, "payloads"), index), "name"), payload.name) for index, payload in enumerate(vehicle.payloads)),
-    ]
-
-
-def _check_names(named: list[tuple[Trail, object]]) -> None:
-    check_unique(named, within="stage or payload")
-    for trail, name in named:
-        if name == _TAKEN:
-            tell(trail, "is the name of the first branch", read=name, expected=f"any name but {_TAKEN!r}")
+def _check_names(vehicle: Vehicle, trail: Trail, *, taken: Sequence[tuple[Trail, Payload]]) -> None:
+    stages: Trail = (trail, "stages")
+    payloads: Trail = (trail, "payloads")
+    named: list[tuple[Trail, str]] = [((stages, index), stage.name) for index, stage in enumerate(vehicle.stages)]
+    named += [((payloads, index), payload.name) for index, payload in enumerate(vehicle.payloads)]
+    named += [(place, payload.name) for place, payload in taken]
+    seen = {_TAKEN}
+    for place, name in named:
+        if name in seen:
+            message = "is the name of another stage or payload, or of the first branch"
+            tell((place, "name"), message, read=name, expected=f"a name of its own, and not {_TAKEN!r}")
+        seen.add(name)
 
 
 def _check_rules(rules: Rules, trail: Trail) -> None:
-    place: Trail = (trail, "contingency")
-    categories = [(((place, index), "category"), rule.category) for index, rule in enumerate(rules.contingency)]
-    check_unique(categories, within="rule")
-    table: Trail = (trail, "growth_table")
-    rows = [((table, index), (row.maturity, row.class_)) for index, row in enumerate(rules.growth_table)]
-    check_unique(rows, within="row of the table")
+    categories = [rule.category for rule in rules.contingency]
+    check_unique(categories, (trail, "contingency"), within="rule", field="category")
+    rows = [(row.maturity, row.class_) for row in rules.growth_table]
+    check_unique(rows, (trail, "growth_table"), within="row of the table")
