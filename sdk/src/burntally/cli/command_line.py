@@ -4,6 +4,7 @@ import sys
 import traceback
 from argparse import ArgumentParser, Namespace
 from collections.abc import Sequence
+from io import TextIOWrapper
 from typing import Final
 
 from burntally.cli import check, serve
@@ -33,7 +34,7 @@ def main(argv: Sequence[str] | None = None) -> int:
     """
     for stream in (sys.stdout, sys.stderr):
         # A terminal that cannot show a sign gets its code point in place of a failure.
-        if hasattr(stream, "reconfigure"):
+        if isinstance(stream, TextIOWrapper):
             stream.reconfigure(errors="backslashreplace")
     try:
         arguments = _parser().parse_args(argv)

@@ -70,11 +70,12 @@ def request_for(
 def _content(operation: Operation[A], body: Body | None, media_type: str) -> bytes:
     if body is None or isinstance(body, bytes):
         return body or b""
-    if isinstance(body, msgspec.Struct) or operation.request is None:
+    if isinstance(body, msgspec.Struct):
         return encode(body, media_type=media_type)
     # Dates stay dates: the border knows which of them are epochs.
     plain = msgspec.to_builtins(body, builtin_types=(date, datetime), enc_hook=_with_unit)
-    return encode(decode_builtins(operation.request, plain), media_type=media_type)
+    value = plain if operation.request is None else decode_builtins(operation.request, plain)
+    return encode(value, media_type=media_type)
 
 
 def _with_unit(quantity: Any) -> str:  # noqa: ANN401 -- whatever the caller put into the mapping

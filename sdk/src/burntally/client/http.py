@@ -45,7 +45,7 @@ class HttpSender:
                 timeout=_timeout(timeout_s),
             ) as response:
                 # The library bounds each read; a server that trickles is bounded here.
-                chunks = []
+                chunks: list[bytes] = []
                 for chunk in response.iter_bytes():
                     if time.monotonic() > deadline_s:
                         return TimedOut(f"no whole answer within {timeout_s:.1f} s", request=request)

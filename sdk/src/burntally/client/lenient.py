@@ -6,7 +6,7 @@ stands. A wrong shape stays an error.
 """
 
 from types import UnionType
-from typing import Annotated, Any, Final, Literal, TypeVar, Union, get_args, get_origin
+from typing import Annotated, Any, Final, Literal, TypeGuard, TypeVar, Union, get_args, get_origin
 
 import msgspec
 
@@ -52,14 +52,22 @@ def _build(type_: Any, value: Any) -> Any:  # noqa: ANN401 -- a walk over types 
         return value
     if get_origin(type_) in _UNIONS:
         return _build_choice(type_, value)
-    if get_origin(type_) is list and isinstance(value, list):
+    if get_origin(type_) is list and _is_array(value):
         return [_build(arguments[0], item) for item in value]
-    if _is_struct(type_) and isinstance(value, dict):
+    if _is_struct(type_) and _is_object(value):
         return _build_struct(type_, value)
     return msgspec.convert(value, type=type_)
 
 
-def _is_struct(type_: object) -> bool:
+def _is_array(value: object) -> TypeGuard[list[Any]]:
+    return isinstance(value, list)
+
+
+def _is_object(value: object) -> TypeGuard[dict[str, Any]]:
+    return isinstance(value, dict)
+
+
+def _is_struct(type_: object) -> TypeGuard[type[msgspec.Struct]]:
     return isinstance(type_, type) and issubclass(type_, msgspec.Struct)
 
 
@@ -74,7 +82,7 @@ def _build_struct(type_: type[msgspec.Struct], value: dict[str, Any]) -> msgspec
 
 def _build_choice(type_: Any, value: Any) -> Any:  # noqa: ANN401 -- as above
     choices = get_args(type_)
-    if not isinstance(value, dict):
+    if not _is_object(value):
         literal = next((choice for choice in choices if get_origin(choice) is Literal), None)
         return msgspec.convert(value, type=type_) if literal is None else _build(literal, value)
     structs = [choice for choice in choices if _is_struct(choice)]

@@ -3,6 +3,8 @@
 from dataclasses import dataclass
 from typing import Final, Generic, Literal, TypeVar
 
+from msgspec import Struct
+
 from burntally.model.budget import Budget
 from burntally.model.design import Design
 from burntally.model.operations import (
@@ -50,7 +52,7 @@ class Operation(Generic[A_co]):
     id: str
     method: Literal["GET", "POST"]
     path: str
-    request: type | None
+    request: type[Struct] | None
     answer: type[A_co]
 
 
