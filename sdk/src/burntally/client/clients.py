@@ -3,7 +3,7 @@
 import time
 from collections.abc import Mapping
 from types import TracebackType
-from typing import Any, Protocol, Self, TypeVar
+from typing import Any, Self, TypeVar
 
 from burntally.client.errors import TimedOut
 from burntally.client.exchange import Body, answer_of, decoded
@@ -20,6 +20,7 @@ from burntally.client.operations import (
     Operation,
 )
 from burntally.client.retries import Outcome
+from burntally.client.senders import AsyncSender, Sender
 from burntally.client.settings import ClientSettings
 from burntally.model.budget import Budget
 from burntally.model.decode import JSON
@@ -35,33 +36,9 @@ from burntally.model.operations import (
     TransferRequest,
 )
 
-__all__ = ["AsyncClient", "AsyncSender", "Client", "Sender"]
+__all__ = ["AsyncClient", "Client"]
 
 A = TypeVar("A")
-
-
-class Sender(Protocol):
-    """One way in: sends once, and never raises what the retry rule should weigh."""
-
-    def send_once(self, request: Request, timeout_s: float) -> Outcome:
-        """Send once."""
-        ...
-
-    def close(self) -> None:
-        """Let go of the connection."""
-        ...
-
-
-class AsyncSender(Protocol):
-    """The same for an event loop."""
-
-    async def send_once(self, request: Request, timeout_s: float) -> Outcome:
-        """Send once."""
-        ...
-
-    async def close(self) -> None:
-        """Let go of the connection."""
-        ...
 
 
 class Client:

@@ -2,9 +2,10 @@
 
 from typing import TYPE_CHECKING, Final
 
-from burntally.client.clients import AsyncClient, AsyncSender, Client, Sender
+from burntally.client.clients import AsyncClient, Client
 from burntally.client.http import AsyncHttpSender, HttpSender
 from burntally.client.inprocess import AsyncInProcessSender, InProcessSender, installed
+from burntally.client.senders import AsyncSender, Sender
 from burntally.client.settings import ClientSettings
 from burntally.version import __version__
 
