@@ -126,7 +126,8 @@ def object_of(pairs: Sequence[tuple[object, object]]) -> dict[object, object]:
 
 
 def _containers(values: Iterable[object]) -> list[dict[object, object] | list[object]]:
-    return [value for value in values if isinstance(value, dict | list)]
+    # Each of them once: in YAML one may stand in many places, and the ways to them double with each level.
+    return list({id(value): value for value in values if isinstance(value, dict | list)}.values())
 
 
 def _integer(text: str) -> int | float:
