@@ -2,13 +2,16 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from textwrap import wrap
 from typing import Final
 
-__all__ = ["ABSENT", "Column", "grouped", "line_up", "mass_decimals"]
+__all__ = ["ABSENT", "Column", "grouped", "hang", "line_up", "mass_decimals"]
 
 ABSENT: Final = "-"
 
 _GAP: Final = "  "
+_WIDTH: Final = 118
+_WIDTH_MIN: Final = 50
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -54,6 +57,26 @@ def line_up(columns: Sequence[Column], *, indent: str = _GAP) -> str:
     """
     rows = zip(*(column.lines() for column in columns), strict=True)
     return "\n".join((indent + _GAP.join(row)).rstrip() for row in rows)
+
+
+def hang(head: str, words: str) -> list[str]:
+    """Break words into lines that hang to the right of a head.
+
+    Parameters
+    ----------
+    head : str
+        Stands before the first line, and its width before the others.
+    words : str
+        One paragraph. Words are not broken, so that a pointer stays one.
+
+    Returns
+    -------
+    list of str
+        At least one line.
+    """
+    width = max(_WIDTH_MIN, _WIDTH - len(head))
+    lines = wrap(words, width, break_long_words=False, break_on_hyphens=False) or [""]
+    return [(lead + line).rstrip() for lead, line in zip([head, *[" " * len(head)] * len(lines)], lines, strict=False)]
 
 
 def grouped(number: float | None, *, decimals: int = 1) -> str:

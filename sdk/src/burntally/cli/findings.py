@@ -3,7 +3,9 @@
 from collections.abc import Sequence
 from typing import Final
 
-from burntally.cli.columns import grouped
+import msgspec
+
+from burntally.cli.columns import grouped, hang
 from burntally.model.budget import Caution, Finding, Remedy
 
 __all__ = ["cautions_text", "findings_text"]
@@ -27,16 +29,16 @@ def findings_text(findings: Sequence[Finding]) -> str:
     known = {severity: rank for rank, severity in enumerate(_SEVERITIES)}
     ranked = sorted(findings, key=lambda finding: known.get(finding.severity, len(known)))
     heads = _aligned([(finding.severity, finding.code, finding.pointer) for finding in ranked])
-    lines = [
-        [f"  {head}  {finding.message}", *map(_remedy, finding.remedies)]
+    return "\n".join(
+        line
         for head, finding in zip(heads, ranked, strict=True)
-    ]
-    return "\n".join(line for block in lines for line in block)
+        for line in (*hang(head, finding.message), *_remedy_lines(finding.remedies))
+    )
 
 
 def _aligned(rows: Sequence[Sequence[str]]) -> list[str]:
     widths = [max(map(len, column)) for column in zip(*rows, strict=True)]
-    return ["  ".join(cell.ljust(width) for cell, width in zip(row, widths, strict=True)) for row in rows]
+    return ["  " + "  ".join(cell.ljust(width) for cell, width in zip(row, widths, strict=True)) + "  " for row in rows]
 
 
 def cautions_text(cautions: Sequence[Caution]) -> str:
@@ -53,17 +55,22 @@ def cautions_text(cautions: Sequence[Caution]) -> str:
         Empty where there are none.
     """
     heads = _aligned([("caution", caution.code) for caution in cautions])
-    return "\n".join(f"  {head}  {caution.message}" for head, caution in zip(heads, cautions, strict=True))
+    return "\n".join(
+        line for head, caution in zip(heads, cautions, strict=True) for line in hang(head, caution.message)
+    )
+
+
+def _remedy_lines(remedies: Sequence[Remedy]) -> list[str]:
+    return [line for remedy in remedies for line in hang("      remedy: ", _remedy(remedy))]
 
 
 def _remedy(remedy: Remedy) -> str:
     then = "" if remedy.margin is None else f"; margin then {grouped(remedy.margin)} m/s"
-    return f"      remedy: {remedy.message} ({remedy.pointer}: {_field(remedy.from_)} -> {_field(remedy.to)}{then})"
+    return f"{remedy.message} ({remedy.pointer}: {_field(remedy.from_)} -> {_field(remedy.to)}{then})"
 
 
-def _field(value: float | str | bool | None) -> str:  # noqa: FBT001 -- a field's own value, not a switch
+def _field(value: object) -> str:
+    """Write a field's value as a design file has it."""
     if value is None:
         return "absent"
-    if isinstance(value, bool):
-        return str(value).lower()
-    return f"{value:.10g}" if isinstance(value, float) else str(value)
+    return f"{value:.10g}" if isinstance(value, float) else msgspec.json.encode(value).decode()

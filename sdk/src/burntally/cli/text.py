@@ -22,6 +22,7 @@ _ORDER_OF_THE_BOOKS: Final = (
     "Order of the books: required + losses + contingency = charged, leg by leg; the reserve is held after the last\n"
     "charged leg of a branch; the margin is the least slack that is left then."
 )
+_PRELIMINARY: Final = "preliminary"
 _DIGEST_SHOWN: Final = 12
 
 
@@ -43,7 +44,8 @@ def render(budget: Budget) -> str:
         *(_branch_text(budget, branch) for branch in budget.branches),
         stages_text(budget),
         findings_text(budget.findings),
-        cautions_text(budget.cautions),
+        # The notice at the end says it to every reader, in the same words.
+        cautions_text([caution for caution in budget.cautions if caution.code != _PRELIMINARY]),
         _provenance_text(budget.provenance),
         f"{_ORDER_OF_THE_BOOKS}\n{NOTICE}",
     ]

@@ -1,0 +1,150 @@
+"""One client, three ways in: the same bytes for the same request, and the same error for the same fault."""
+
+import asyncio
+import json
+from collections.abc import Callable, Iterator
+from typing import Any
+
+import httpx2
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from burntally.client import Answer, connect, connect_async, errors
+from burntally_service.api.app import create_app
+from burntally_service.api.examples import requests_of
+from burntally_service.operations import OPERATIONS
+
+URL = "http://burntally.test"
+Way = Callable[..., Answer]
+
+
+class Loop(httpx2.BaseTransport):
+    """Reaches the application from a synchronous client: the library's own transport to it is asynchronous only."""
+
+    def __init__(self, app: Any) -> None:
+        self._transport = httpx2.ASGITransport(app)
+
+    def handle_request(self, request: httpx2.Request) -> httpx2.Response:
+        async def send() -> httpx2.Response:
+            async with httpx2.AsyncClient(transport=self._transport) as client:
+                return await client.request(
+                    request.method, request.url, content=request.read(), headers=request.headers
+                )
+
+        reply = asyncio.run(send())
+        return httpx2.Response(reply.status_code, headers=reply.headers, content=reply.content)
+
+
+@pytest.fixture(scope="module")
+def app() -> Any:
+    return create_app()
+
+
+@pytest.fixture(scope="module")
+def inprocess() -> Iterator[Way]:
+    with connect() as client:
+        yield client.call
+
+
+@pytest.fixture(scope="module")
+def over_http(app: Any) -> Iterator[Way]:
+    with connect(URL, transport=Loop(app), tries=1) as client:
+        yield client.call
+
+
+def call_async(app: Any, *args: Any, **options: Any) -> Answer:
+    async def call() -> Answer:
+        async with connect_async(URL, transport=httpx2.ASGITransport(app), tries=1) as client:
+            return await client.call(*args, **options)
+
+    return asyncio.run(call())
+
+
+def examples() -> list[Any]:
+    named = [
+        pytest.param(operation, example["value"], id=f"{operation}-{name}")
+        for operation in OPERATIONS
+        for name, example in requests_of(operation).items()
+    ]
+    lists = [pytest.param(row.id, None, id=row.id) for row in OPERATIONS.values() if row.request is None]
+    return [*named, *lists]
+
+
+def arguments(operation: str, value: Any) -> tuple[tuple[Any, ...], dict[str, Any]]:
+    """Take a name out of the request where it travels in the path, and write a body as it stands."""
+    if value is None:
+        return (operation,), {}
+    if not OPERATIONS[operation].takes_body:
+        return (operation,), {"name": value["name"]}
+    return (operation, json.dumps(value).encode()), {}
+
+
+@pytest.mark.parametrize("operation,value", examples())
+def test_http_gives_the_bytes_of_the_installed_service(
+    operation: str, value: Any, inprocess: Way, over_http: Way
+) -> None:
+    args, options = arguments(operation, value)
+    assert over_http(*args, **options).body == inprocess(*args, **options).body
+
+
+@pytest.mark.parametrize("operation,value", examples())
+def test_the_asynchronous_client_gives_them_too(operation: str, value: Any, inprocess: Way, app: Any) -> None:
+    args, options = arguments(operation, value)
+    assert call_async(app, *args, **options).body == inprocess(*args, **options).body
+
+
+@given(mass=st.floats(0.0, 1e6), isp=st.floats(150.0, 500.0), altitude=st.floats(2e5, 1e7))
+@settings(max_examples=25)
+def test_any_design_has_one_budget(mass: float, isp: float, altitude: float, inprocess: Way, over_http: Way) -> None:
+    design = {
+        "format": 1,
+        "vehicle": {
+            "name": "Meridian tug",
+            "stages": [
+                {
+                    "name": "tug",
+                    "dry_mass": 420.0,
+                    "propellants": [{"mass": mass}],
+                    "engines": [{"thrust": 2000.0, "isp": isp}],
+                }
+            ],
+        },
+        "mission": {
+            "start": {"kind": "orbit", "body": "earth", "altitude": 400e3},
+            "legs": [{"kind": "transfer", "to": {"altitude": altitude}}],
+        },
+    }
+    assert over_http("create_budget", design).body == inprocess("create_budget", design).body
+
+
+WRONG = [
+    pytest.param(("create_budget", b""), {}, id="empty"),
+    pytest.param(("create_budget", b"{"), {}, id="no JSON"),
+    pytest.param(("create_budget", b"{}"), {}, id="nothing in it"),
+    pytest.param(("create_budget", b'{"format":1,"format":1}'), {}, id="twice"),
+    pytest.param(("create_budget", b"[" * 100_000), {}, id="too deep"),
+    pytest.param(("create_budget", b"{}"), {"media_type": "text/plain"}, id="media type"),
+    pytest.param(("create_budget", b"{}"), {"accept": "text/plain"}, id="accept"),
+    pytest.param(("get_body",), {"name": "nowhere"}, id="no body"),
+    pytest.param(("get_body",), {"name": "?"}, id="no name"),
+    pytest.param(("get_rules",), {"name": "nobodys"}, id="no rules"),
+]
+
+
+def error_of(way: Way, *args: Any, **options: Any) -> tuple[Any, ...]:
+    with pytest.raises(errors.StatusError) as caught:
+        way(*args, **options)
+    error = caught.value
+    return type(error), error.status, error.problem_code, error.violations
+
+
+@pytest.mark.parametrize("args,options", WRONG)
+def test_a_fault_is_the_same_error(
+    args: tuple[Any, ...], options: dict[str, Any], inprocess: Way, over_http: Way
+) -> None:
+    assert error_of(over_http, *args, **options) == error_of(inprocess, *args, **options)
+
+
+def test_an_answer_over_http_has_an_id(over_http: Way) -> None:
+    assert over_http("list_bodies").request_id
