@@ -1,7 +1,7 @@
 """The system of bodies: the solar catalogue, or one that the user makes."""
 
 from burntally_service.bodies.body import Body
-from burntally_service.bodies.solar import catalogue
+from burntally_service.bodies.solar import catalogue, table_digest
 from burntally_service.bodies.system import system_of
 
-__all__ = ["Body", "catalogue", "system_of"]
+__all__ = ["Body", "catalogue", "system_of", "table_digest"]

@@ -1,6 +1,7 @@
 """The solar catalogue, read once, when it is first asked for."""
 
 import functools
+import hashlib
 import math
 from collections.abc import Mapping
 from types import MappingProxyType
@@ -12,7 +13,7 @@ from msgspec import Meta, Struct
 from burntally_service.bodies.body import Body
 from burntally_service.kernels.orbits import soi_radius
 
-__all__ = ["catalogue"]
+__all__ = ["catalogue", "table_digest"]
 
 _Positive = Annotated[float, Meta(gt=0.0)]
 _Words = Annotated[str, Meta(min_length=1)]
@@ -57,14 +58,25 @@ def catalogue() -> Mapping[str, Body]:
     >>> round(catalogue()["moon"].soi_radius, -6)
     66000000.0
     """
-    # Imported here, since a mission of invented bodies alone never reads the file.
-    from importlib.resources import files
-
-    text = files("burntally_service").joinpath("data/bodies.toml").read_bytes()
+    text = _text()
     bodies: dict[str, Body] = {}
     for row in msgspec.toml.decode(text, type=_File).bodies:
         bodies[row.name] = _body(row, None if row.parent is None else bodies[row.parent])
     return MappingProxyType(bodies)
+
+
+@functools.cache
+def table_digest() -> str:
+    """SHA-256 of the data file, in hexadecimal digits."""
+    return hashlib.sha256(_text()).hexdigest()
+
+
+def _text() -> bytes:
+    """Read the data file."""
+    # Imported here, since a mission of invented bodies alone never reads the file.
+    from importlib.resources import files
+
+    return files("burntally_service").joinpath("data/bodies.toml").read_bytes()
 
 
 def _body(row: _Row, parent: Body | None) -> Body:

@@ -1,1 +1,5 @@
-"""From a design to its budget: resolve, plan, lower, tally, explain."""
+"""The budget: resolve, plan, lower, tally, explain."""
+
+from burntally_service.budget.draw_up import draw_up
+
+__all__ = ["draw_up"]

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 from burntally.model.mission import Release, Separate, TakeOn
 from burntally.model.rules import Rules
 from burntally.model.vehicle import Engine, MassList, Payload, Stage, Vehicle
-from burntally_service.budget.plan import OPEN_ACCOUNT, BranchPlan, PlannedLeg, is_ascent
+from burntally_service.budget.plan import OPEN_ACCOUNT, BranchPlan, PlannedLeg, is_quiet
 from burntally_service.kernels import tally_rows as rows
 from burntally_service.vehicle.masses import growth_of, items_of
 
@@ -195,7 +195,7 @@ def _lower_leg(draft: _Draft, branch: int, row: PlannedLeg, marks: tuple[bool, b
             branch,
             _account(draft, row.account),
             int(row.charged),
-            int(is_ascent(row.leg)),
+            int(is_quiet(row.leg)),
             row.rule_index,
             rule.fraction,
             rule.floor,

@@ -4,13 +4,14 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from burntally.model.design import Design
-from burntally.model.mission import Ascend, Branch, ChargedLeg, Leg, Location, Mission, TakeOn
+from burntally.model.mission import Ascend, Branch, ChargedLeg, Coast, Leg, Location
 from burntally.model.rules import Contingency, Reserve, Rules
 from burntally_service.budget.rules import no_rule, rule_for
 from burntally_service.bodies import Body
-from burntally_service.legs import Clock, LegPlan, plan_leg
+from burntally_service.legs.plan import plan_leg
+from burntally_service.legs.planned import Clock, LegPlan
 
-__all__ = ["BranchPlan", "Handoff", "PlannedLeg", "category_of", "plan_branch", "rule_pointer"]
+__all__ = ["OPEN_ACCOUNT", "BranchPlan", "Handoff", "PlannedLeg", "category_of", "is_quiet", "plan_branch"]
 
 OPEN_ACCOUNT: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
@@ -39,28 +40,12 @@ class PlannedLeg:
     rule_index: int
 
     @property
-    def required(self) -> float:
-        """Ideal cost of the leg [m/s]."""
-        total = 0.0
-        for manoeuvre in self.plan.manoeuvres:
-            total += manoeuvre.delta_v
-        return total
-
-    @property
-    def duration(self) -> float:
-        """Time that the leg takes [s]."""
-        total = self.plan.coast_after
-        for manoeuvre in self.plan.manoeuvres:
-            total += manoeuvre.coast_before
-        return total
-
-    @property
     def charged(self) -> bool:
         """Whether the leg is charged a delta-v: a manoeuvre, or what the rule adds to one that costs nothing."""
         if not self.plan.manoeuvres:
             return False
         on_leg = self.rule.floor if self.rule.floor_on == "leg" else 0.0
-        return self.required > 0.0 or on_leg > 0.0 or self.rule.fixed > 0.0
+        return self.plan.delta_v > 0.0 or on_leg > 0.0 or self.rule.fixed > 0.0
 
     @property
     def kilograms(self) -> float:
@@ -100,11 +85,6 @@ def category_of(leg: Leg) -> str | None:
     return leg.category or type(leg).default_category
 
 
-def rule_pointer(rules: Rules, index: int) -> str:
-    """Where a rule stands in the design: itself, or the nearest ancestor where a preset gave it."""
-    return f"/rules/contingency/{index}" if index < len(rules.contingency) else "/rules"
-
-
 def plan_branch(
     design: Design,
     rules: Rules,
@@ -141,13 +121,15 @@ def plan_branch(
     location, elapsed = handoff.location, handoff.elapsed
     planned: list[PlannedLeg] = []
     for index, leg in enumerate(legs):
-        plan = plan_leg(leg, location, bodies=bodies, clock=Clock(elapsed=elapsed, epoch=mission.epoch))
+        pointer = f"{base}/legs/{index}"
+        clock = Clock(elapsed=elapsed, epoch=mission.epoch)
+        plan = plan_leg(leg, location, bodies=bodies, clock=clock, pointer=pointer)
         category = category_of(leg)
         rule_index = -1 if category is None else rule_for(category, rules)
         row = PlannedLeg(
             leg=leg,
             index=index,
-            pointer=f"{base}/legs/{index}",
+            pointer=pointer,
             start=location,
             elapsed=elapsed,
             plan=plan,
@@ -156,27 +138,19 @@ def plan_branch(
             rule_index=rule_index,
         )
         planned.append(row)
-        location, elapsed = plan.end, elapsed + row.duration
+        location, elapsed = plan.end, elapsed + plan.duration
     return BranchPlan(
         name=of.of if of else "main",
         part=of.of if of else "",
         pointer=base,
         legs=tuple(planned),
         reserve=own_reserve or rules.reserve or Reserve(),
-        reserve_pointer=f"{base}/reserve" if own_reserve else "/rules/reserve",
+        # Where a preset gave the reserve, the nearest ancestor in the design is told.
+        reserve_pointer=f"{base}/reserve" if own_reserve else "/rules/reserve" if design.rules.reserve else "/rules",
         start_elapsed=handoff.elapsed,
     )
 
 
-def docked_branches(mission: Mission, leg: Leg) -> int:
-    """Index of the branch that a leg docks; 0 if it docks none."""
-    if isinstance(leg, TakeOn) and leg.branch is not None:
-        for index, branch in enumerate(mission.branches):
-            if branch.of == leg.branch:
-                return index + 1
-    return 0
-
-
-def is_ascent(leg: Leg) -> bool:
-    """Whether handing over within a leg is expected of it."""
-    return isinstance(leg, Ascend)
+def is_quiet(leg: Leg) -> bool:
+    """Tell whether handing over within a leg is not worth telling: expected in an ascent, of no weight in upkeep."""
+    return isinstance(leg, Ascend | Coast)

@@ -52,6 +52,8 @@ def blank_books(tables: Tables, lines: int) -> Books:
         [0] * stages,
         list(range(stages)),
         [-1] * stages,
+        [0] * stages,
+        [0.0] * stages,
         *by_branch,
         started,
         *reserves,
@@ -231,6 +233,7 @@ def wipe(books: Books) -> None:
         books.where[stage] = 0
         books.order[stage] = stage
         books.left_in[stage] = -1
+        books.unbalanced[stage] = 0
     for place in range(len(books.rule_sum)):
         books.rule_sum[place] = 0.0
     for branch in range(len(books.branch_mass)):

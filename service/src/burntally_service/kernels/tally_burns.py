@@ -6,7 +6,7 @@ Every function here reads `Tables` and changes `Books`; the comments name the bo
 import math
 from typing import Final
 
-from burntally_service.kernels.tally_flow import can_burn, finish_line, light_flow, spare_of, write_line
+from burntally_service.kernels.tally_flow import can_burn, finish_line, light_flow, spare_of, wants_ignition, write_line
 from burntally_service.kernels.tally_rows import (
     CONTINGENCY,
     KILOGRAMS,
@@ -20,7 +20,10 @@ from burntally_service.kernels.tally_rows import (
 )
 from burntally_service.kernels.tally_stack import shed
 
-__all__ = ["NOTHING_OWED", "any_can_burn", "pay"]
+__all__ = ["NOTHING_OWED", "any_can_burn", "burn_out", "pay"]
+
+UNBALANCED_FRACTION: Final = 0.005
+"""A load of a mixture left over by more than this share of what was loaded is told."""
 
 TINY: Final = 5e-324
 """The least positive number: only what is exactly paid is below it."""
@@ -111,8 +114,26 @@ def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int,
         if enough:
             return 0.0
         books.usable[first_dry] = 0.0
+        _mark_unbalanced(tables, books, stage, first_dry)
         thrust, mdot, mask = light_flow(tables, books, burner)
     return amount
+
+
+def _mark_unbalanced(tables: Tables, books: Books, stage: int, dry: int) -> None:
+    """Mark a load that has run dry while much of another is left that an engine feeds on together with it."""
+    row = tables.stages[stage]
+    for engine in range(row.first_engine, row.end_engine):
+        fitted = tables.engines[engine]
+        fed = False
+        over = -1
+        for feed in range(fitted.first_feed, fitted.end_feed):
+            load = tables.feeds[feed].load
+            fed = fed or load == dry
+            if books.usable[load] > UNBALANCED_FRACTION * books.stock[load]:
+                over = load
+        if fed and over >= 0 and books.unbalanced[stage] == 0:
+            books.unbalanced[stage] = 1 + engine
+            books.unbalanced_kg[stage] = books.usable[over]
 
 
 def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> float:
@@ -155,7 +176,7 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
     left = amount
     # Kilograms owed are counted as a delta-v first, and held against the tolerance then.
     tolerance = TINY if purpose == KILOGRAMS else NOTHING_OWED
-    ran_dry = -1
+    passed = -1
     lowest = -1
     for position in range(stages):
         stage = books.order[position]
@@ -163,21 +184,24 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
             continue
         burner = tables.burner_of[base + stage]
         if burner < 0 or not any_can_burn(tables, books, burner):
+            # Only the open account passes a stage that merely lacks an ignition; named payers have a finding of their own.
+            if burner >= 0 and base == 0 and wants_ignition(tables, books, burner):
+                passed = stage
             lowest = stage
             continue
-        if purpose != KILOGRAMS:
-            if position > 0:
-                shed(tables, books, leg, position)
-            if lowest >= 0 and books.where[lowest] == branch:
-                books.unlit[leg] = 1
+        if purpose != KILOGRAMS and position > 0:
+            shed(tables, books, leg, position)
+        if lowest >= 0 and books.where[lowest] == branch:
+            books.unlit[leg] = 1
         if purpose == MANOEUVRE:
             _ignite(tables, books, leg, burner)
         before = left
         left = _burn(tables, books, leg, burner, (purpose, left))
         if left < before:
-            if ran_dry >= 0 and purpose <= CONTINGENCY and not tables.legs[leg].ascent:
-                books.handover[leg] = ran_dry + 1
-            ran_dry = stage
+            if passed >= 0 and purpose <= CONTINGENCY and not tables.legs[leg].quiet:
+                books.handover[leg] = passed + 1
+            passed = stage
+        lowest = stage
         if left < tolerance:
             return 0.0
     return left
@@ -190,3 +214,51 @@ def any_can_burn(tables: Tables, books: Books, burner: int) -> bool:
         if can_burn(tables, books, tables.lit[place]):
             return True
     return False
+
+
+def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
+    """Ideal delta-v of all that the main engines of a stage can burn, under a given mass.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied; its first account is the open one.
+    books : Books
+        Changed: the usable propellant of the stage is burned.
+    stage : int
+        Index of the stage, [-].
+    mass : float
+        Mass of the stage and all above it, [kg].
+
+    Returns
+    -------
+    float
+        Sum over the intervals of one set of lit engines, [m/s].
+
+    References
+    ----------
+    .. [1] Sutton, Biblarz, Rocket Propulsion Elements, 9th ed., sec. 4.1.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> tables = Tables(*([],) * 8, [-1], *([],) * 5)
+    >>> burn_out(tables, blank_books(tables, 0), 0, 1.0)
+    0.0
+    """
+    burner = tables.burner_of[stage]
+    delta_v = 0.0
+    if burner < 0:
+        return delta_v
+    thrust, mdot, _ = light_flow(tables, books, burner)
+    while mdot > 0.0:
+        time, first_dry = spare_of(tables, books, stage)
+        kg = mdot * time
+        delta_v += thrust / mdot * math.log(mass / (mass - kg))
+        mass -= kg
+        row = tables.stages[stage]
+        for load in range(row.first_load, row.end_load):
+            books.usable[load] = max(0.0, books.usable[load] - books.flow[load] * time)
+        books.usable[first_dry] = 0.0
+        thrust, mdot, _ = light_flow(tables, books, burner)
+    return delta_v

@@ -5,7 +5,7 @@ from typing import Final
 
 from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, STAMP, Books, Tables
 
-__all__ = ["DRY_FRACTION", "can_burn", "finish_line", "light_flow", "spare_of", "write_line"]
+__all__ = ["DRY_FRACTION", "can_burn", "finish_line", "light_flow", "spare_of", "wants_ignition", "write_line"]
 
 DRY_FRACTION: Final = 1e-9
 """A load below this share of what was loaded is dry (P7)."""
@@ -198,3 +198,20 @@ def finish_line(books: Books, mask: int, spare: float) -> None:
     if start + LINE_WIDTH <= len(books.lines):
         books.lines[start + 8] = float(mask)
         books.lines[start + 9] = spare
+
+
+def wants_ignition(tables: Tables, books: Books, burner: int) -> bool:
+    """Tell whether an engine of a burner has propellant in all its feeds, and only lacks an ignition."""
+    row = tables.burners[burner]
+    for place in range(row.first_lit, row.end_lit):
+        engine = tables.lit[place]
+        if books.used[engine] < tables.engines[engine].max_ignitions:
+            continue
+        fed = True
+        fitted = tables.engines[engine]
+        for feed in range(fitted.first_feed, fitted.end_feed):
+            load = tables.feeds[feed].load
+            fed = fed and books.usable[load] > DRY_FRACTION * books.stock[load]
+        if fed:
+            return True
+    return False

@@ -167,13 +167,14 @@ class LegRow(NamedTuple):
     """A leg: its account, and what its contingency rule says.
 
     `rule` is -1 without a rule. `settles` marks the last leg of a category's floor in its branch, `reserves` the leg
-    that the reserve of its branch follows, `charged` a leg that is charged a delta-v.
+    that the reserve of its branch follows, `charged` a leg that is charged a delta-v, `quiet` one in which handing over
+    is not told.
     """
 
     branch: int
     account: int
     charged: int
-    ascent: int
+    quiet: int
     rule: int
     fraction: float
     floor: float
@@ -243,6 +244,8 @@ class Books(NamedTuple):
     where: list[int]
     order: list[int]
     left_in: list[int]
+    unbalanced: list[int]
+    unbalanced_kg: list[float]
     branch_mass: list[float]
     branch_clock: list[float]
     branch_charged: list[float]

@@ -1,7 +1,7 @@
 """The stack: what separates, what starts a branch, and why an account can pay no more."""
 
 from burntally_service.kernels.tally_books import stage_mass
-from burntally_service.kernels.tally_flow import DRY_FRACTION, can_burn, write_line
+from burntally_service.kernels.tally_flow import can_burn, wants_ignition, write_line
 from burntally_service.kernels.tally_rows import (
     DRY,
     GONE,
@@ -190,25 +190,8 @@ def cause_of(tables: Tables, books: Books, leg: int) -> int:
         burners += 1
         if books.where[stage] == tables.legs[leg].branch:
             aboard += 1
-            if _wants_ignition(tables, books, burner):
+            if wants_ignition(tables, books, burner):
                 return NO_IGNITION
     if burners == 0:
         return INERT
     return DRY if aboard > 0 else GONE
-
-
-def _wants_ignition(tables: Tables, books: Books, burner: int) -> bool:
-    """Tell whether an engine of a burner has propellant in all its feeds, and only lacks an ignition."""
-    row = tables.burners[burner]
-    for place in range(row.first_lit, row.end_lit):
-        engine = tables.lit[place]
-        if books.used[engine] < tables.engines[engine].max_ignitions:
-            continue
-        fed = True
-        fitted = tables.engines[engine]
-        for feed in range(fitted.first_feed, fitted.end_feed):
-            load = tables.feeds[feed].load
-            fed = fed and books.usable[load] > DRY_FRACTION * books.stock[load]
-        if fed:
-            return True
-    return False

@@ -1,0 +1,200 @@
+"""Drawing up: resolve, plan, lower, tally; what the books say, before it is explained."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import NamedTuple
+
+from burntally.model.design import Design
+from burntally.model.mission import Ascend
+from burntally.model.rules import Rules
+from burntally_service.bodies import Body, system_of
+from burntally_service.budget.lower import Lowered, lower
+from burntally_service.budget.plan import BranchPlan, Handoff, PlannedLeg, plan_branch
+from burntally_service.budget.rules import resolve
+from burntally_service.kernels import tally_rows as rows
+from burntally_service.kernels.tally import tally
+from burntally_service.kernels.tally_books import blank_books
+from burntally_service.kernels.tally_slack import slack_by_search, slacks
+from burntally_service.legs.orbit import check_start
+
+__all__ = ["Drawn", "Line", "draw"]
+
+_ROOM_PER_STEP = 4
+
+
+class Line(NamedTuple):
+    """One line of the ledger, as the tally wrote it."""
+
+    kind: int
+    leg: int
+    part: int
+    purpose: int
+    delta_v: float
+    kg: float
+    mass: float
+    time: float
+    mask: int
+    spare: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Drawn:
+    """Books of a design, with the names that their indices stand for.
+
+    Attributes
+    ----------
+    slack : list of float or None
+        By leg, then by branch for its reserve, [m/s]; None where there is none.
+    """
+
+    design: Design
+    rules: Rules
+    bodies: Mapping[str, Body]
+    lowered: Lowered
+    books: rows.Books
+    lines: list[Line]
+    slack: list[float | None]
+
+    @property
+    def branches(self) -> list[BranchPlan | None]:
+        """Plans of the branches; None where a branch never started."""
+        return self.lowered.branches
+
+    def legs_of(self, branch: int) -> list[tuple[int, PlannedLeg]]:
+        """Legs of a branch with their index in the tables."""
+        return [(leg, row) for leg, (of, row) in enumerate(self.lowered.legs) if of == branch and row is not None]
+
+    def part_name(self, part: int) -> str:
+        """Name of a stage, or of a payload counted after the stages."""
+        stages = len(self.lowered.stages)
+        return self.lowered.stages[part].name if part < stages else self.lowered.payloads[part - stages].name
+
+    def engines_lit(self, stage: int, mask: int) -> list[int]:
+        """Engines of a stage, as indices into the tables, whose bit is set."""
+        row = self.lowered.tables.stages[stage]
+        return [engine for engine in range(row.first_engine, row.end_engine) if mask >> (engine - row.first_engine) & 1]
+
+    def engine_name(self, engine: int) -> str:
+        """Name of an engine of the tables."""
+        stage, place = self.lowered.engines[engine]
+        return self.lowered.stages[stage].engines[place].name
+
+
+def draw(design: Design, *, with_slack: bool = True) -> Drawn:
+    """Draw up the books of a design.
+
+    A branch is planned once its parent's books tell where and when its part left, so the tally runs once more for each
+    branch that starts.
+
+    Parameters
+    ----------
+    design : Design
+        The design.
+    with_slack : bool
+        Whether the slack of each leg is wanted.
+
+    Returns
+    -------
+    Drawn
+        The books.
+
+    Raises
+    ------
+    UncomputableError
+        If the preset or a body is not known.
+    """
+    rules = resolve(design.rules)
+    bodies = system_of(design.mission.system)
+    check_start(design.mission.start, bodies, pointer="/mission/start")
+    plans: list[BranchPlan | None] = [None] * (len(design.mission.branches) + 1)
+    start = Handoff(location=design.mission.start, elapsed=0.0)
+    plans[0] = plan_branch(design, rules, branch=0, handoff=start, bodies=bodies)
+    while True:
+        lowered = lower(design.vehicle, rules, plans)
+        books, lines = _tallied(lowered)
+        started = _newly_started(design, lowered, lines)
+        if started is None:
+            break
+        branch, handoff = started
+        plans[branch] = plan_branch(design, rules, branch=branch, handoff=handoff, bodies=bodies)
+    return Drawn(
+        design=design,
+        rules=rules,
+        bodies=bodies,
+        lowered=lowered,
+        books=books,
+        lines=lines,
+        slack=_slack(lowered, books) if with_slack else [],
+    )
+
+
+def _tallied(lowered: Lowered) -> tuple[rows.Books, list[Line]]:
+    """Tally, with more room for lines if the first guess was too small."""
+    tables = lowered.tables
+    room = _ROOM_PER_STEP * len(tables.steps)
+    books = blank_books(tables, room)
+    tally(tables, books)
+    written = books.count[rows.LINES]
+    if written > room:
+        books = blank_books(tables, written)
+        tally(tables, books)
+    return books, [_line(books.lines, line * rows.LINE_WIDTH) for line in range(written)]
+
+
+def _line(cells: list[float], start: int) -> Line:
+    """Read one line out of the flat ledger."""
+    kind, leg, part, purpose, delta_v, kg, mass, time, mask, spare = cells[start : start + rows.LINE_WIDTH]
+    return Line(int(kind), int(leg), int(part), int(purpose), delta_v, kg, mass, time, int(mask), spare)
+
+
+def _newly_started(design: Design, lowered: Lowered, lines: list[Line]) -> tuple[int, Handoff] | None:
+    """First branch that a separation starts and that is not planned yet, with where it starts.
+
+    What leaves together starts the first branch that is of any part of it.
+    """
+    place = 0
+    while place < len(lines):
+        end = place + 1
+        if lines[place].kind == rows.LINE_SEPARATION:
+            while end < len(lines) and lines[end][:2] == lines[place][:2]:
+                end += 1
+            group = {lowered.stages[line.part].name for line in lines[place:end]}
+            for index, branch in enumerate(design.mission.branches):
+                if lines[place].purpose < 0 and branch.of in group and lowered.branches[index + 1] is None:
+                    return index + 1, _handoff(lowered, lines, place)
+        place = end
+    return None
+
+
+def _handoff(lowered: Lowered, lines: list[Line], place: int) -> Handoff:
+    """Where and when a part left: at its leg's start or end, or at a place that nobody knows within it."""
+    line = lines[place]
+    row = lowered.legs[line.leg][1]
+    if row is None:
+        return Handoff(location=None, elapsed=line.time)
+    burned = [other.purpose for other in lines[:place] if other.leg == line.leg and other.kind == rows.LINE_BURN]
+    if not row.plan.manoeuvres or (not burned and not isinstance(row.leg, Ascend)):
+        return Handoff(location=row.start, elapsed=line.time)
+    settled = any(purpose in {rows.CONTINGENCY, rows.RESERVE} for purpose in burned)
+    return Handoff(location=row.plan.end if settled else None, elapsed=line.time)
+
+
+def _slack(lowered: Lowered, books: rows.Books) -> list[float | None]:
+    """Slack by leg, then by branch for its reserve; none in a branch that owes."""
+    tables = lowered.tables
+    legs, stages, branches = len(tables.legs), len(tables.stages), len(tables.branches)
+    walk = [[0.0] * (legs + branches), *([0.0] * stages for _ in range(4))]
+    slacks(tables, books, walk)
+    found: list[float | None] = [None] * (legs + branches)
+    scratch = None
+    for mark in range(legs + branches):
+        branch = tables.legs[mark].branch if mark < legs else mark - legs
+        has_one = tables.legs[mark].charged if mark < legs else books.reserve[branch] > 0.0
+        if not has_one or books.branch_owed[branch] > 0.0 or not books.branch_started[branch]:
+            continue
+        slack = walk[0][mark]
+        if slack < 0.0:
+            scratch = scratch or blank_books(tables, 0)
+            slack = slack_by_search(tables, scratch, mark)
+        found[mark] = slack
+    return found

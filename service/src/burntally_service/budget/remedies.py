@@ -1,0 +1,286 @@
+"""Remedies: the smallest change of one field that mends a shortfall, each run again before it is told."""
+
+import math
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, field
+
+from msgspec import structs
+
+from burntally.model.budget import Finding, Remedy
+from burntally.model.design import Design
+from burntally.model.errors import BurntallyError
+from burntally.model.mission import ChargedLeg
+from burntally_service.budget.drawing import Drawn, draw
+from burntally_service.budget.findings import findings_of
+from burntally_service.budget.leg_books import margin_of
+from burntally_service.budget.pointing import value_at, with_value
+
+__all__ = ["with_remedies"]
+
+_OWING = frozenset(
+    {"leg-unpaid", "reserve-unpaid", "payer-gone", "payer-inert", "payer-dry", "ignitions-exceeded", "boiled-dry"}
+)
+_SHORT = frozenset({*_OWING, "release-short", "overfilled"})
+
+_MOST_TOLD = 3
+_MOST_TRIES = 40
+_MOST_STEPS_TALLIED = 60_000
+"""Work that the search for remedies may do, in steps of a plan tallied: about a second at worst."""
+
+_SIGNIFICANT = 4
+"""Digits that a changed number is rounded to, away from the shortfall."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Change:
+    """A field that may be changed, up to a bound, and in what words."""
+
+    pointer: str
+    now: float
+    bound: float
+    words: str
+
+
+@dataclass(slots=True)
+class _Bench:
+    """Runs changed designs, within a bound of work."""
+
+    design: Design
+    steps: int
+    spent: int = 0
+    cache: dict[tuple[str, float], float] = field(default_factory=dict)
+
+    def draw(self, pointer: str, value: object, *, with_slack: bool = False) -> Drawn | None:
+        """Draw up the design with one field changed; None if it cannot be computed, or the work is used up."""
+        self.spent += self.steps
+        if self.spent > _MOST_STEPS_TALLIED:
+            return None
+        try:
+            return draw(with_value(self.design, pointer, value), with_slack=with_slack)
+        except BurntallyError:
+            return None
+
+
+def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
+    """Add to each shortfall the changes that mend it.
+
+    Parameters
+    ----------
+    drawn : Drawn
+        The books of the design.
+    findings : list of Finding
+        What they show.
+
+    Returns
+    -------
+    list of Finding
+        The same, shortfalls with up to three remedies, the smallest change first.
+    """
+    if not any(finding.code in _SHORT for finding in findings):
+        return findings
+    bench = _Bench(drawn.design, len(drawn.lowered.tables.steps))
+    by_branch: dict[str, list[Remedy]] = {}
+    mended = []
+    for finding in findings:
+        if finding.code not in _SHORT:
+            mended.append(finding)
+            continue
+        remedies = list(_own_remedies(drawn, finding, bench))
+        if finding.code in _OWING and finding.branch is not None:
+            if finding.branch not in by_branch:
+                by_branch[finding.branch] = _branch_remedies(drawn, finding.branch, bench)
+            remedies += by_branch[finding.branch]
+        mended.append(structs.replace(finding, remedies=remedies[:_MOST_TOLD]))
+    return mended
+
+
+def _branch_remedies(drawn: Drawn, name: str, bench: _Bench) -> list[Remedy]:
+    """Changes that let a whole branch be paid, the smallest first."""
+    branch = _branch_index(drawn, name)
+    found = []
+    for change in _changes(drawn, branch):
+
+        def owed(value: float, change: _Change = change) -> float:
+            again = bench.draw(change.pointer, value)
+            return math.inf if again is None else _owed(again, name)
+
+        value = _least_change(change, owed)
+        if value is not None:
+            remedy = _checked(bench, change, value, lambda again: _owed(again, name) == 0.0)
+            if remedy is not None:
+                found.append((abs(value - change.now) / max(change.now, 1e-300), remedy))
+    return [remedy for _, remedy in sorted(found, key=lambda pair: pair[0])]
+
+
+def _branch_index(drawn: Drawn, name: str) -> int:
+    return next(index for index, plan in enumerate(drawn.branches) if plan and plan.name == name)
+
+
+def _owed(drawn: Drawn, name: str) -> float:
+    """What a branch owes; nothing is told of one that does not start."""
+    for index, plan in enumerate(drawn.branches):
+        if plan and plan.name == name:
+            return drawn.books.branch_owed[index]
+    return math.inf
+
+
+def _changes(drawn: Drawn, branch: int) -> Iterator[_Change]:
+    """Fields whose change may let a branch be paid: loads and engines of its payers, and payloads."""
+    tables = drawn.lowered.tables
+    stages = len(tables.stages)
+    payers: set[int] = set()
+    for leg, row in enumerate(tables.legs):
+        owes = drawn.books.owed[leg] > 0.0 or (row.reserves and drawn.books.reserve_owed[branch] > 0.0)
+        if row.branch == branch and owes:
+            base = row.account * stages
+            payers |= {stage for stage in range(stages) if tables.burner_of[base + stage] >= 0}
+    for load, (stage, place) in enumerate(drawn.lowered.loads):
+        if stage in payers:
+            row_of_load = tables.loads[load]
+            model = drawn.lowered.stages[stage].propellants[place]
+            pointer = f"/vehicle/stages/{stage}/propellants/{place}/mass"
+            bound = min(row_of_load.capacity, max(1.0, 1000.0 * model.mass), 1e9)
+            yield _Change(pointer=pointer, now=model.mass, bound=bound, words=f"load {model.name} of stage {stage + 1}")
+    for index, payload in enumerate(drawn.design.vehicle.payloads):
+        if isinstance(payload.mass, float) and payload.mass > 0.0:
+            pointer = f"/vehicle/payloads/{index}/mass"
+            yield _Change(pointer=pointer, now=payload.mass, bound=0.0, words=f"carry {payload.name}")
+    for engine, (stage, place) in enumerate(drawn.lowered.engines):
+        if stage in payers and not tables.engines[engine].auxiliary:
+            isp = tables.engines[engine].isp
+            pointer = f"/vehicle/stages/{stage}/engines/{place}/isp"
+            yield _Change(pointer=pointer, now=isp, bound=1.5 * isp, words=f"isp of {drawn.engine_name(engine)}")
+
+
+def _least_change(change: _Change, owed: Callable[[float], float]) -> float | None:
+    """Value nearest to the present one at which nothing is owed; None if not even the bound is enough."""
+    short, enough = change.now, change.bound
+    if enough == short or owed(enough) > 0.0:
+        return None
+    for _ in range(_MOST_TRIES):
+        middle = math.sqrt(short * enough) if short > 0.0 and enough > 0.0 else 0.5 * (short + enough)
+        rounded = _rounded(middle, up=enough > short)
+        if (rounded - short) * (rounded - enough) >= 0.0:
+            break
+        if owed(rounded) > 0.0:
+            short = rounded
+        else:
+            enough = rounded
+    return enough
+
+
+def _rounded(value: float, *, up: bool) -> float:
+    """Round to a few significant digits, up or down."""
+    if value == 0.0:
+        return value
+    scale = 10.0 ** (_SIGNIFICANT - 1 - math.floor(math.log10(abs(value))))
+    return (math.ceil(value * scale) if up else math.floor(value * scale)) / scale
+
+
+def _checked(bench: _Bench, change: _Change, value: float, mends: Callable[[Drawn], bool]) -> Remedy | None:
+    """Run a change once more, with the margin that it brings; None if it does not mend after all."""
+    again = bench.draw(change.pointer, value, with_slack=True)
+    if again is None or not mends(again):
+        return None
+    return _remedy(again, change.pointer, (change.now, value), f"{change.words}: {change.now:.6g} → {value:.6g}")
+
+
+def _remedy(again: Drawn, pointer: str, values: tuple[object, object], message: str) -> Remedy:
+    """Tell a change with the margin of the budget that it brings."""
+    margins = [margin_of(again, branch) for branch, plan in enumerate(again.branches) if plan]
+    margin = min((margin for margin in margins if margin is not None), default=None)
+    return Remedy(pointer=pointer, from_=values[0], to=values[1], margin=margin, message=message)  # type: ignore[arg-type]
+
+
+def _own_remedies(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Changes of the field at fault itself that make one finding go."""
+    tries = {
+        "payer-gone": _open_account,
+        "payer-inert": _open_account,
+        "payer-dry": _open_account,
+        "ignitions-exceeded": _more_ignitions,
+        "release-short": _what_is_there,
+        "overfilled": _what_fits,
+    }
+    attempt = tries.get(finding.code)
+    if attempt is not None:
+        yield from attempt(drawn, finding, bench)
+    if finding.code in _OWING and finding.leg is not None:
+        yield from _less_asked(drawn, finding, bench)
+
+
+def _is_mended(again: Drawn, finding: Finding) -> bool:
+    """Tell whether a finding is gone from changed books."""
+    key = (finding.branch, finding.leg)
+    return not any(
+        other.code in _OWING | {finding.code} and other.code == finding.code and (other.branch, other.leg) == key
+        for other in findings_of(again)
+    ) and not any(other.code in _OWING and (other.branch, other.leg) == key for other in findings_of(again))
+
+
+def _tried(bench: _Bench, finding: Finding, pointer: str, values: tuple[object, object], message: str) -> Iterator[Remedy]:
+    """Run one change, and tell it if it mends the finding."""
+    again = bench.draw(pointer, values[1], with_slack=True)
+    if again is not None and _is_mended(again, finding):
+        yield _remedy(again, pointer, values, message)
+
+
+def _open_account(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Let any stage pay."""
+    now = value_at(drawn.design, finding.pointer)
+    yield from _tried(bench, finding, finding.pointer, (now, None), "let any stage aboard pay: leave paid_by out")
+
+
+def _more_ignitions(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Allow more ignitions, as few more as mend it."""
+    pointer = f"{finding.pointer}/max_ignitions"
+    now = value_at(drawn.design, pointer)
+    for more in (1, 2, 3, 5, 10, 20, 50, 100):
+        again = bench.draw(pointer, now + more, with_slack=True)
+        if again is not None and _is_mended(again, finding):
+            yield _remedy(again, pointer, (now, now + more), f"allow {now + more} ignitions")
+            return
+
+
+def _what_is_there(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Release what there is."""
+    leg = value_at(drawn.design, finding.pointer)
+    if leg.mass is not None and leg.mass == finding.value:
+        pointer = f"{finding.pointer}/mass"
+    else:
+        places = [index for index, move in enumerate(leg.propellants) if move.mass == finding.value]
+        pointer = f"{finding.pointer}/propellants/{places[0]}/mass" if places else ""
+    if pointer:
+        values = (finding.value, finding.limit)
+        yield from _tried(bench, finding, pointer, values, f"release the {finding.limit:.6g} kg that are there")
+
+
+def _what_fits(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Load what may be loaded."""
+    values = (value_at(drawn.design, finding.pointer), finding.limit)
+    again = bench.draw(finding.pointer, finding.limit, with_slack=True)
+    if again is not None and not any(
+        other.code == finding.code and other.pointer == finding.pointer for other in findings_of(again)
+    ):
+        yield _remedy(again, finding.pointer, values, f"load {finding.limit:.6g} kg")
+
+
+def _less_asked(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Ask less of a leg whose cost is stated: what its account can pay."""
+    branch = _branch_index(drawn, finding.branch or "")
+    row = next(row for _, row in drawn.legs_of(branch) if row.index == finding.leg)
+    stated = row.leg.delta_v if isinstance(row.leg, ChargedLeg) and hasattr(row.leg, "delta_v") else None
+    if not isinstance(stated, float) or stated <= 0.0:
+        return
+    pointer = f"{row.pointer}/delta_v"
+    change = _Change(pointer=pointer, now=stated, bound=0.0, words="ask less of the leg")
+
+    def owed(value: float) -> float:
+        again = bench.draw(pointer, value)
+        return math.inf if again is None else float(not _is_mended(again, finding))
+
+    value = _least_change(change, owed)
+    if value is not None:
+        remedy = _checked(bench, change, value, lambda again: _is_mended(again, finding))
+        if remedy is not None:
+            yield remedy
