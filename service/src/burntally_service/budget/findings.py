@@ -47,8 +47,8 @@ def findings_of(drawn: Drawn) -> list[Finding]:
 
 
 def _identity(finding: Finding) -> tuple[str, str | None, int | None, str]:
-    """What two findings share that are told once: code and leg; away from a leg, code and pointer."""
-    where = finding.pointer if finding.leg is None else ""
+    """What two findings share that are told once: code and leg; for a part of the vehicle, code and pointer."""
+    where = finding.pointer if finding.leg is None or finding.pointer.startswith("/vehicle") else ""
     return finding.code, finding.branch, finding.leg, where
 
 
@@ -218,9 +218,11 @@ def _boiled_dry(drawn: Drawn) -> Iterator[Finding]:
     for line in drawn.lines:
         if line.kind == rows.LINE_BOILED and line.mask:
             dried.setdefault(line.part, line)
+    told: set[int] = set()
     for load, line in dried.items():
         stage = drawn.lowered.loads[load][0]
-        if _missed_later(drawn, stage, line):
+        if stage not in told and _missed_later(drawn, stage, line):
+            told.add(stage)
             yield Finding(
                 code="boiled-dry",
                 severity="error",

@@ -9,10 +9,10 @@ from msgspec import structs
 from burntally.model.budget import Finding, Remedy
 from burntally.model.design import Design
 from burntally.model.errors import BurntallyError
-from burntally.model.mission import ChargedLeg
 from burntally_service.budget.drawing import Drawn, draw
 from burntally_service.budget.findings import findings_of
 from burntally_service.budget.leg_books import margin_of
+from burntally_service.budget.plan import PlannedLeg
 from burntally_service.budget.pointing import value_at, with_value
 
 __all__ = ["with_remedies"]
@@ -21,6 +21,9 @@ _OWING = frozenset(
     {"leg-unpaid", "reserve-unpaid", "payer-gone", "payer-inert", "payer-dry", "ignitions-exceeded", "boiled-dry"}
 )
 _SHORT = frozenset({*_OWING, "release-short", "overfilled"})
+
+_RESERVE = -1
+"""Stands for the reserve where a leg is asked for."""
 
 _MOST_TOLD = 3
 _MOST_TRIES = 40
@@ -61,6 +64,9 @@ class _Bench:
             return None
 
 
+_Attempt = Callable[[Drawn, Finding, _Bench], Iterator[Remedy]]
+
+
 def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
     """Add to each shortfall the changes that mend it.
 
@@ -88,25 +94,26 @@ def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
         remedies = list(_own_remedies(drawn, finding, bench))
         if finding.code in _OWING and finding.branch is not None:
             if finding.branch not in by_branch:
-                by_branch[finding.branch] = _branch_remedies(drawn, finding.branch, bench)
-            remedies += by_branch[finding.branch]
+                by_branch[finding.branch] = _owed_remedies(drawn, finding.branch, None, bench)
+            leg = _RESERVE if finding.leg is None else finding.leg
+            remedies += by_branch[finding.branch] or _owed_remedies(drawn, finding.branch, leg, bench)
+            remedies = remedies or list(_left_out(drawn, finding, bench))
         mended.append(structs.replace(finding, remedies=remedies[:_MOST_TOLD]))
     return mended
 
 
-def _branch_remedies(drawn: Drawn, name: str, bench: _Bench) -> list[Remedy]:
-    """Changes that let a whole branch be paid, the smallest first."""
-    branch = _branch_index(drawn, name)
+def _owed_remedies(drawn: Drawn, name: str, leg: int | None, bench: _Bench) -> list[Remedy]:
+    """Changes that let a whole branch be paid, or one leg of it, the smallest first."""
     found = []
-    for change in _changes(drawn, branch):
+    for change in _changes(drawn, _branch_index(drawn, name), leg):
 
         def owed(value: float, change: _Change = change) -> float:
             again = bench.draw(change.pointer, value)
-            return math.inf if again is None else _owed(again, name)
+            return math.inf if again is None else _owed(again, name, leg)
 
         value = _least_change(change, owed)
         if value is not None:
-            remedy = _checked(bench, change, value, lambda again: _owed(again, name) == 0.0)
+            remedy = _checked(bench, change, value, lambda again: _owed(again, name, leg) == 0.0)
             if remedy is not None:
                 found.append((abs(value - change.now) / max(change.now, 1e-300), remedy))
     return [remedy for _, remedy in sorted(found, key=lambda pair: pair[0])]
@@ -116,20 +123,27 @@ def _branch_index(drawn: Drawn, name: str) -> int:
     return next(index for index, plan in enumerate(drawn.branches) if plan and plan.name == name)
 
 
-def _owed(drawn: Drawn, name: str) -> float:
-    """What a branch owes; nothing is told of one that does not start."""
+def _owed(drawn: Drawn, name: str, leg: int | None) -> float:
+    """What a branch owes, or one leg of it; a branch that no longer starts mends nothing."""
     for index, plan in enumerate(drawn.branches):
         if plan and plan.name == name:
-            return drawn.books.branch_owed[index]
+            if leg is None:
+                return drawn.books.branch_owed[index]
+            if leg == _RESERVE:
+                return drawn.books.reserve_owed[index]
+            return drawn.books.owed[drawn.legs_of(index)[leg][0]]
     return math.inf
 
 
-def _changes(drawn: Drawn, branch: int) -> Iterator[_Change]:
+def _changes(drawn: Drawn, branch: int, only: int | None) -> Iterator[_Change]:
     """Fields whose change may let a branch be paid: loads and engines of its payers, and payloads."""
     tables = drawn.lowered.tables
     stages = len(tables.stages)
     payers: set[int] = set()
+    chosen = None if only is None or only == _RESERVE else drawn.legs_of(branch)[only][0]
     for leg, row in enumerate(tables.legs):
+        if chosen is not None and leg != chosen:
+            continue
         owes = drawn.books.owed[leg] > 0.0 or (row.reserves and drawn.books.reserve_owed[branch] > 0.0)
         if row.branch == branch and owes:
             base = row.account * stages
@@ -194,28 +208,25 @@ def _remedy(again: Drawn, pointer: str, values: tuple[object, object], message: 
 
 def _own_remedies(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
     """Changes of the field at fault itself that make one finding go."""
-    tries = {
-        "payer-gone": _open_account,
-        "payer-inert": _open_account,
-        "payer-dry": _open_account,
-        "ignitions-exceeded": _more_ignitions,
-        "release-short": _what_is_there,
-        "overfilled": _what_fits,
+    tries: dict[str, tuple[_Attempt, ...]] = {
+        "leg-unpaid": (_less_asked,),
+        "payer-gone": (_open_account, _less_asked),
+        "payer-inert": (_open_account, _less_asked),
+        "payer-dry": (_open_account, _less_asked),
+        "ignitions-exceeded": (_more_ignitions, _open_account, _less_asked),
+        "reserve-unpaid": (_less_held,),
+        "release-short": (_what_is_there,),
+        "overfilled": (_what_fits,),
     }
-    attempt = tries.get(finding.code)
-    if attempt is not None:
+    for attempt in tries.get(finding.code, ()):
         yield from attempt(drawn, finding, bench)
-    if finding.code in _OWING and finding.leg is not None:
-        yield from _less_asked(drawn, finding, bench)
 
 
 def _is_mended(again: Drawn, finding: Finding) -> bool:
-    """Tell whether a finding is gone from changed books."""
-    key = (finding.branch, finding.leg)
-    return not any(
-        other.code in _OWING | {finding.code} and other.code == finding.code and (other.branch, other.leg) == key
-        for other in findings_of(again)
-    ) and not any(other.code in _OWING and (other.branch, other.leg) == key for other in findings_of(again))
+    """Tell whether a finding is gone from changed books, and no other shortfall stands in its place."""
+    codes = _OWING if finding.code in _OWING else {finding.code}
+    here = (finding.branch, finding.leg)
+    return not any(other.code in codes and (other.branch, other.leg) == here for other in findings_of(again))
 
 
 def _tried(bench: _Bench, finding: Finding, pointer: str, values: tuple[object, object], message: str) -> Iterator[Remedy]:
@@ -227,8 +238,17 @@ def _tried(bench: _Bench, finding: Finding, pointer: str, values: tuple[object, 
 
 def _open_account(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
     """Let any stage pay."""
-    now = value_at(drawn.design, finding.pointer)
-    yield from _tried(bench, finding, finding.pointer, (now, None), "let any stage aboard pay: leave paid_by out")
+    row = _leg_row(drawn, finding)
+    pointer = f"{row.pointer}/paid_by"
+    now = value_at(drawn.design, pointer)
+    if getattr(row.leg, "engines", None) is None:
+        yield from _tried(bench, finding, pointer, (now, None), "let any stage aboard pay: leave paid_by out")
+
+
+def _leg_row(drawn: Drawn, finding: Finding) -> PlannedLeg:
+    """The leg that a finding is of."""
+    branch = _branch_index(drawn, finding.branch or "")
+    return next(row for _, row in drawn.legs_of(branch) if row.index == finding.leg)
 
 
 def _more_ignitions(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
@@ -267,20 +287,49 @@ def _what_fits(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy
 
 def _less_asked(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
     """Ask less of a leg whose cost is stated: what its account can pay."""
-    branch = _branch_index(drawn, finding.branch or "")
-    row = next(row for _, row in drawn.legs_of(branch) if row.index == finding.leg)
-    stated = row.leg.delta_v if isinstance(row.leg, ChargedLeg) and hasattr(row.leg, "delta_v") else None
-    if not isinstance(stated, float) or stated <= 0.0:
-        return
-    pointer = f"{row.pointer}/delta_v"
-    change = _Change(pointer=pointer, now=stated, bound=0.0, words="ask less of the leg")
+    row = _leg_row(drawn, finding)
+    for name in ("delta_v", "upkeep_per_year", "propellant"):
+        stated = getattr(row.leg, name, None)
+        if isinstance(stated, float) and stated > 0.0:
+            change = _Change(pointer=f"{row.pointer}/{name}", now=stated, bound=0.0, words=f"ask less: {name}")
+            yield from _least_tried(finding, change, bench)
 
-    def owed(value: float) -> float:
-        again = bench.draw(pointer, value)
+
+def _less_held(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Hold less in reserve, where the design states it."""
+    reserve = value_at(drawn.design, finding.pointer)
+    for name in ("delta_v", "fraction"):
+        stated = getattr(reserve, name, 0.0)
+        if stated > 0.0:
+            change = _Change(pointer=f"{finding.pointer}/{name}", now=stated, bound=0.0, words=f"hold less: {name}")
+            yield from _least_tried(finding, change, bench)
+
+
+def _least_tried(finding: Finding, change: _Change, bench: _Bench) -> Iterator[Remedy]:
+    """Find the least change of one field that mends a finding."""
+
+    def is_short(value: float) -> float:
+        again = bench.draw(change.pointer, value)
         return math.inf if again is None else float(not _is_mended(again, finding))
 
-    value = _least_change(change, owed)
+    value = _least_change(change, is_short)
     if value is not None:
         remedy = _checked(bench, change, value, lambda again: _is_mended(again, finding))
         if remedy is not None:
             yield remedy
+
+
+def _left_out(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+    """Leave a leg or a reserve out, where no single number mends what several faults cause together."""
+    pointer = finding.pointer
+    words = "no single number mends this; the branch without the reserve"
+    container, value = pointer, None
+    if finding.leg is not None:
+        pointer = _leg_row(drawn, finding).pointer
+        container = pointer.rpartition("/")[0]
+        legs = value_at(drawn.design, container)
+        value = [leg for index, leg in enumerate(legs) if index != finding.leg]
+        words = "no single number mends this; the branch without the leg"
+    again = None if value == [] else bench.draw(container, value, with_slack=True)
+    if again is not None:
+        yield _remedy(again, pointer, (None, None), words)
