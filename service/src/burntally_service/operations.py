@@ -6,15 +6,16 @@ when it is first called.
 """
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from types import MappingProxyType
 from typing import Annotated, Any, Final, Literal
 
 from msgspec import Struct
+from msgspec.structs import replace
 
 from burntally.model.budget import Budget
 from burntally.model.decode import decode, encode
 from burntally.model.design import Design
+from burntally.model.errors import InconsistentError, Violation
 from burntally.model.operations import (
     Bodies,
     BodyRecord,
@@ -38,8 +39,7 @@ class Named(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     name: Annotated[Name, doc("Name of what is asked for.")]
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Operation:
+class Operation(Struct, frozen=True, kw_only=True):
     """One row of the table.
 
     Attributes
@@ -90,9 +90,25 @@ def _create_budget(design: Design) -> Budget:
 
 
 def _compute_performance(request: PerformanceRequest) -> Performance:
+    from burntally_service.budget.rules import resolve
     from burntally_service.vehicle.performance import performance_of
 
-    return performance_of(request)
+    resolved = replace(request, rules=resolve(request.rules))
+    if request.gravity_of is None:
+        return performance_of(resolved)
+    return performance_of(resolved, gravity=_surface_gravity(request.gravity_of))
+
+
+def _surface_gravity(name: str) -> float:
+    """Gravity at the reference radius of a body of the solar catalogue [m/s2]."""
+    from burntally_service.bodies import catalogue
+
+    body = catalogue().get(name)
+    if body is None:
+        known = ", ".join(catalogue())
+        violation = Violation(pointer="/gravity_of", message="no body has this name", read=name, expected=known)
+        raise InconsistentError([violation])
+    return body.mu / (body.radius * body.radius)
 
 
 def _plan_transfer(request: TransferRequest) -> TransferAnswer:

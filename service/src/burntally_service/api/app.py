@@ -42,7 +42,7 @@ def create_app(settings: Settings | None = None) -> Edge:
         request_max_body_size=settings.max_body_bytes,
         state=State({"ready": False}),
     )
-    return Edge(application)  # type: ignore[arg-type]  # the framework's own, narrower ASGI types
+    return Edge(application)
 
 
 @asynccontextmanager

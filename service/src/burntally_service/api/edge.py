@@ -2,21 +2,16 @@
 
 import re
 import secrets
-from collections.abc import Awaitable, Callable, Mapping, MutableMapping
-from typing import Any, Final
+from typing import Final
 
+from litestar.enums import ScopeType
 from litestar.response.base import ASGIResponse
+from litestar.types import ASGIApp, HTTPScope, Message, Receive, Scope, Send
 
 from burntally.model.errors import NotFoundError
 from burntally_service.api.problems import PROBLEM_JSON, Refusal, refusal_of
 
 __all__ = ["Edge"]
-
-Scope = MutableMapping[str, Any]
-Message = MutableMapping[str, Any]
-Receive = Callable[[], Awaitable[Message]]
-Send = Callable[[Message], Awaitable[None]]
-App = Callable[[Scope, Receive, Send], Awaitable[None]]
 
 _SANE_ID: Final = re.compile(rb"[A-Za-z0-9._\-]{1,64}\Z")
 
@@ -31,12 +26,12 @@ class Edge:
         is mended here, so that no route has to.
     """
 
-    def __init__(self, app: App) -> None:
+    def __init__(self, app: ASGIApp) -> None:
         self.app = app
 
     async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
         """Answer one connection."""
-        if scope["type"] != "http":
+        if scope["type"] != ScopeType.HTTP:
             await self.app(scope, receive, send)
             return
         request_id = _request_id(scope)
@@ -69,14 +64,13 @@ class _Reply:
             self.started = True
             message["headers"] = [*message["headers"], *self._headers]
         elif self._is_head and message["type"] == "http.response.body":
-            message = {**message, "body": b""}
+            message["body"] = b""
         await self._send(message)
 
 
-def _request_id(scope: Mapping[str, Any]) -> str:
+def _request_id(scope: HTTPScope) -> str:
     """Take over the caller's id if it is a plain token, which cannot break a log line; else make one."""
-    headers: list[tuple[bytes, bytes]] = scope["headers"]
-    for name, value in headers:
+    for name, value in scope["headers"]:
         if name == b"x-request-id" and _SANE_ID.match(value):
             return value.decode("ascii")
     return secrets.token_hex(8)
@@ -90,4 +84,4 @@ async def _refuse(refusal: Refusal, scope: Scope, receive: Receive, send: Send) 
     response = ASGIResponse(
         body=refusal.body, status_code=refusal.status, headers=refusal.headers, media_type=PROBLEM_JSON
     )
-    await response(scope, receive, send)  # type: ignore[arg-type]  # the framework's own, narrower ASGI types
+    await response(scope, receive, send)
