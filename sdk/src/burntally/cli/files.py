@@ -198,7 +198,8 @@ def _toml(text: str) -> object:
         return tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
         found = _TOML_PLACE.search(str(error))
-        line, column = map(int, found.groups()) if found else (None, None)
+        # Else it says: at the end of the document.
+        line, column = map(int, found.groups()) if found else (text.count("\n") + 1, len(text) - text.rfind("\n"))
         message = str(error).split(" (at ", maxsplit=1)[0]
         raise _SyntaxFaultError(f"is not TOML: {message}", line, column) from error
 

@@ -44,12 +44,10 @@ def factor(unit: str, x_unit: str) -> float | None:
     known = units.get_current_unit_registry().registry
     if not all(word in known for word in _WORD.findall(unit)):
         raise ValueError(unit)
+    wanted = units.dimensionless_unscaled if x_unit == "1" else units.Unit(x_unit)
     try:
-        found = units.Unit(unit)
-        wanted = units.dimensionless_unscaled if x_unit == "1" else units.Unit(x_unit)
-    except (TypeError, ArithmeticError) as error:
-        raise ValueError(unit) from error
-    try:
-        return float(found.to(wanted))
+        return float(units.Unit(unit).to(wanted))
     except units.UnitConversionError:
         return None
+    except OverflowError as error:
+        raise ValueError(unit) from error

@@ -63,12 +63,6 @@ def _as_it_is(value: object, _trail: Trail) -> object:
     return value
 
 
-def _null(value: object, trail: Trail) -> object:
-    if value is not None:
-        tell(trail, f"is {kind_of(value)} where null is wanted", read=value, expected="null")
-    return value
-
-
 def _struct_of(info: inspect.StructType) -> Reader:
     cls = info.cls
     readers = {field.encode_name: _made(field.type, {}) for field in info.fields}
@@ -221,7 +215,6 @@ _KINDS: Final[dict[type, tuple[type, ...]]] = {
 _MAKERS: Final[dict[type, Callable[..., Reader]]] = {
     inspect.StructType: _struct_of,
     inspect.BoolType: lambda _: boolean,
-    inspect.NoneType: lambda _: _null,
     inspect.IntType: count_of,
     inspect.StrType: text_of,
     inspect.LiteralType: choice_of,
