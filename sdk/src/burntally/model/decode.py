@@ -13,7 +13,6 @@ import msgspec
 from burntally.model import _parse
 from burntally.model._msgpack import msgpack_values
 from burntally.model._trail import Report, ReportFullError, Trail, tell
-from burntally.model._walker import walk
 from burntally.model.checks import violations
 from burntally.model.errors import ContractError, InconsistentError, UncomputableError
 
@@ -86,6 +85,8 @@ def decode_builtins(type_: type[T], parsed: object) -> T:
     InconsistentError
         Every field is in order, and together they break a rule that no schema can state.
     """
+    from burntally.model._walker import walk  # as slow to load as the rest of the border, and often not needed
+
     if _parse.depth_of(parsed) > _parse.DEEPEST:
         raise _parse.too_deep()
     plain, found = walk(type_, parsed)

@@ -6,10 +6,10 @@ exact factors, in decimal, so that ``"1.001 km"`` is the same float as ``1001.0`
 
 import re
 from decimal import Context, Decimal
-from difflib import get_close_matches
 from typing import Final
 
 from burntally.model import _astropy
+from burntally.model._trail import suggestion
 from burntally.model._units import COMMON, DIMENSIONS, G0, SPELLING
 from burntally.model.errors import BurntallyError
 
@@ -177,12 +177,7 @@ def _looked_up(unit: str, x_unit: str) -> float | None:
             f"has a unit outside the common ones ({common}): {unit!r}; others need `pip install burntally[units]`"
         ) from error
     except ValueError as error:
-        raise QuantityError(f"has an unknown unit, {unit!r}{_suggestion(unit, x_unit)}") from error
-
-
-def _suggestion(unit: str, x_unit: str) -> str:
-    near = get_close_matches(unit, units_of(x_unit), n=1, cutoff=0.5)
-    return f"; did you mean {near[0]!r}?" if near else ""
+        raise QuantityError(f"has an unknown unit, {unit!r}{suggestion(unit, units_of(x_unit))}") from error
 
 
 def _why_not(number: str, unit: str, x_unit: str) -> str:
