@@ -1,5 +1,6 @@
 """Planning a leg, whatever its kind."""
 
+import math
 from collections.abc import Mapping
 from dataclasses import replace
 
@@ -82,9 +83,9 @@ def _entering(leg: Leg, start: Location | None, bodies: Mapping[str, Body]) -> P
         return None
     body = body_named(start.body, bodies, pointer="/start/body")
     size = size_of(start, body, pointer="/start")
-    if size is None or body.altitude_at(size.r_peri) >= body.atmosphere_top:
+    altitude = math.inf if size is None else body.altitude_at(size.r_peri)
+    if body.atmosphere_top <= 0.0 or altitude >= body.atmosphere_top:
         return None
-    altitude = body.altitude_at(size.r_peri)
     message = f"the leg goes on from an orbit whose periapsis, at {altitude:.6g} m, is in the air of {body.name}"
     return PlanFinding(
         code="entering", severity="note", message=message, value=altitude, limit=body.atmosphere_top, unit="m"

@@ -19,6 +19,9 @@ from burntally_service.legs.weigh import Choice, choose, extent
 
 __all__ = ["plan_transfer"]
 
+# Planes nearer to each other than this are one: an angle turned whole turns on is off by rounding [rad].
+_ONE_PLANE = 1e-12
+
 _LINE_ASSUMED = Caution(
     code="line-of-nodes-assumed",
     message="the argument of periapsis is not known: the apse line is taken to lie on the line of nodes",
@@ -140,11 +143,16 @@ def _turn(leg: Transfer, start: OrbitLocation) -> Crossing | PlanFinding:
     inc_f = inc_i if to.inclination is None else math.radians(to.inclination)
     if to.raan is None or not (0.0 < inc_i < math.pi and 0.0 < inc_f < math.pi):
         # An orbit in the equator has no node of its own: the other's serves both.
-        return crossing(inc_i, 0.0, inc_f, 0.0)
+        return _told(crossing(inc_i, 0.0, inc_f, 0.0))
     if start.raan is None:
         message = "the node of the orbit that this leg starts from is not known, so the turn to another cannot be told"
         return PlanFinding(code="node-unknown", message=message, suffix="/to/raan")
-    return crossing(inc_i, math.radians(start.raan), inc_f, math.radians(to.raan))
+    return _told(crossing(inc_i, math.radians(start.raan), inc_f, math.radians(to.raan)))
+
+
+def _told(turn: Crossing) -> Crossing:
+    """Turn of the plane with what is rounding left out."""
+    return turn if turn.angle > _ONE_PLANE else turn._replace(angle=0.0)
 
 
 def _from_hyperbola(leg: Transfer, start: Hyperbola, body: Body, pointer: str) -> _Asked | PlanFinding:
