@@ -1,5 +1,6 @@
 """Drawing up a budget: the books of a design, explained."""
 
+import functools
 import hashlib
 from collections.abc import Iterator
 from importlib.metadata import version
@@ -112,12 +113,18 @@ def _leg_cautions(drawn: Drawn) -> Iterator[Caution]:
         yield Caution(code="finite-burn-not-estimated", message=message)
 
 
+@functools.cache
+def _version() -> str:
+    """Version of this service, read once, since reading it costs as much as a budget."""
+    return version("burntally-service")
+
+
 def _provenance(design: Design) -> Provenance:
     """What the budget was made from and by."""
     preset = design.rules.preset
     return Provenance(
         format=design.format,
-        version=version("burntally-service"),
+        version=_version(),
         design_digest=hashlib.sha256(msgspec.json.encode(design, order="deterministic")).hexdigest(),
         preset=preset,
         preset_digest=None if preset is None else preset_digest(preset),

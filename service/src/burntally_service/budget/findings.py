@@ -9,7 +9,7 @@ from burntally_service.budget.limits import limit_findings, overfilled
 from burntally_service.budget.plan import PlannedLeg
 from burntally_service.budget.stage_books import left_behind, stage_left_behind
 from burntally_service.kernels import tally_rows as rows
-from burntally_service.kernels.tally_flow import DRY_FRACTION
+from burntally_service.kernels.tally_books import DRY_FRACTION
 from burntally_service.vehicle.masses import has_uncovered_item
 
 __all__ = ["findings_of", "load_pointer", "stage_pointer"]

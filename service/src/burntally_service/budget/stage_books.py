@@ -1,5 +1,7 @@
 """What each stage has, gave and keeps; and what was delivered."""
 
+from msgspec import structs
+
 from burntally.model.budget import DeltaVBook, Delivery, LoadBook, Separated, StageBook
 from burntally_service.budget.drawing import Drawn, Line
 from burntally_service.kernels import tally_rows as rows
@@ -116,7 +118,7 @@ def _capability(drawn: Drawn) -> list[float]:
 def _left(drawn: Drawn) -> list[float]:
     """Ideal delta-v of what is left of each stage, under all that is above it in the branch that it ends in [m/s]."""
     tables, books = drawn.lowered.tables, drawn.books
-    end = books._replace(usable=list(books.usable), flow=list(books.flow))
+    end = structs.replace(books, usable=list(books.usable), flow=list(books.flow), flow_of=list(books.flow_of))
     left = [0.0] * len(tables.stages)
     above = [0.0] * len(tables.branches)
     for stage in reversed(books.order):

@@ -2,9 +2,10 @@
 
 import math
 
-from burntally_service.kernels.tally_books import load_up, stage_mass
-from burntally_service.kernels.tally_burns import NOTHING_OWED, any_can_burn, pay
-from burntally_service.kernels.tally_flow import DRY_FRACTION, finish_line, light_flow, spare_of, write_line
+from burntally_service.kernels.tally_books import DRY_FRACTION, load_up
+from burntally_service.kernels.tally_burns import NOTHING_OWED, pay
+from burntally_service.kernels.tally_exchange import exchange
+from burntally_service.kernels.tally_flow import light_flow, spare_of, write_line
 from burntally_service.kernels.tally_rows import (
     ADD_AT,
     ADDITION,
@@ -12,30 +13,19 @@ from burntally_service.kernels.tally_rows import (
     BURN,
     COAST,
     CONTINGENCY,
-    DOCK,
     DRAW,
     END,
     KILOGRAMS,
-    LINE_ABSENT,
     LINE_BOILED,
-    LINE_DOCKED,
-    LINE_HANDED,
-    LINE_RELEASE,
-    LINE_TAKEN,
-    LINE_TAKEN_PAYLOAD,
+    LINES,
     PAID,
-    RELEASE_PAYLOAD,
-    RELEASE_PROPELLANT,
     RESERVE,
-    SEPARATE,
     STAMP,
     START,
-    TAKE_PAYLOAD,
-    TAKE_PROPELLANT,
     Books,
     Tables,
 )
-from burntally_service.kernels.tally_stack import cause_of, detach
+from burntally_service.kernels.tally_stack import cause_of
 
 __all__ = ["tally"]
 
@@ -85,14 +75,17 @@ def tally(tables: Tables, books: Books) -> None:
         elif op == START:
             if not books.branch_started[step.part]:
                 index = tables.branches[step.part].end_step
+        elif op == DRAW:
+            _draw(tables, books, step.leg, step.amount)
         else:
-            _exchange(tables, books, op, (step.leg, step.part, step.amount, step.count))
+            exchange(tables, books, op, (step.leg, step.part, step.amount))
 
 
 def _begin(tables: Tables, books: Books, leg: int) -> None:
     """Note what a leg starts with; nothing is lit in it yet."""
     branch = tables.legs[leg].branch
     books.count[STAMP] += 1
+    books.line_begin[leg] = books.count[LINES]
     books.mass_before[leg] = books.branch_mass[branch]
     books.clock_before[leg] = books.branch_clock[branch]
 
@@ -103,19 +96,20 @@ def _manoeuvre(tables: Tables, books: Books, leg: int, order: tuple[int, float, 
     books.required[leg] += amount
     if amount <= 0.0:
         return
+    share = amount / splits
     for _ in range(splits):
         books.count[STAMP] += 1
-        _charge(tables, books, leg, (purpose, amount / splits))
+        owed = pay(tables, books, leg, purpose, share)
+        if owed > 0.0:
+            _owe(tables, books, leg, owed)
 
 
-def _charge(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -> None:
-    """Pay a delta-v, and note what is owed and why."""
-    owed = pay(tables, books, leg, order[0], order[1])
-    if owed > 0.0:
-        if books.cause[leg] == PAID:
-            books.cause[leg] = cause_of(tables, books, leg)
-        books.owed[leg] += owed
-        books.branch_owed[tables.legs[leg].branch] += owed
+def _owe(tables: Tables, books: Books, leg: int, owed: float) -> None:
+    """Note what is owed, and why."""
+    if books.cause[leg] == PAID:
+        books.cause[leg] = cause_of(tables, books, leg)
+    books.owed[leg] += owed
+    books.branch_owed[tables.legs[leg].branch] += owed
 
 
 def _end(tables: Tables, books: Books, leg: int) -> None:
@@ -128,6 +122,7 @@ def _end(tables: Tables, books: Books, leg: int) -> None:
         _add(tables, books, leg)
     books.mass_after[leg] = books.branch_mass[branch]
     books.clock_after[leg] = books.branch_clock[branch]
+    books.line_end[leg] = books.count[LINES]
     if row.charged:
         _note_spare(tables, books, leg, leg)
     if row.reserves:
@@ -160,7 +155,9 @@ def _contingency(tables: Tables, books: Books, leg: int) -> None:
     added = share + floor + row.fixed
     books.branch_charged[row.branch] += base + added
     if added > 0.0:
-        _charge(tables, books, leg, (CONTINGENCY, added))
+        owed = pay(tables, books, leg, CONTINGENCY, added)
+        if owed > 0.0:
+            _owe(tables, books, leg, owed)
 
 
 def _hold_reserve(tables: Tables, books: Books, leg: int) -> None:
@@ -185,34 +182,48 @@ def _hold_reserve(tables: Tables, books: Books, leg: int) -> None:
 def _note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
     """Note which stage of a leg's account would pay an addition here, and how much it has (rule M)."""
     stages = len(tables.stages)
-    branch = tables.legs[leg].branch
-    base = tables.legs[leg].account * stages
+    row = tables.legs[leg]
+    base = row.account * stages
     below = False
     for position in range(stages):
         stage = books.order[position]
-        if books.where[stage] != branch:
+        if books.where[stage] != row.branch:
             continue
         burner = tables.burner_of[base + stage]
-        if burner < 0 or not any_can_burn(tables, books, burner):
+        if burner < 0:
             below = True
             continue
         if books.spare_stage[mark] >= 0:
-            books.spare_more[mark] = 1
-            return
+            # Only whether another stage could go on matters, and most accounts have none to ask.
+            if _can_pay(tables, books, burner):
+                books.spare_more[mark] = 1
+                return
+            continue
         thrust, mdot, mask = light_flow(tables, books, burner)
+        if mask == 0:
+            below = True
+            continue
         time, first_dry = spare_of(tables, books, stage)
         books.spare[mark] = mdot * time
         books.spare_speed[mark] = thrust / mdot
-        books.spare_mass[mark] = books.branch_mass[branch]
+        books.spare_mass[mark] = books.branch_mass[row.branch]
         books.spare_stage[mark] = stage
         books.spare_mask[mark] = mask
         if below or _burns_on(tables, books, burner, first_dry):
             books.spare_more[mark] = 1
 
 
+def _can_pay(tables: Tables, books: Books, burner: int) -> bool:
+    """Tell whether any engine of a burner can burn."""
+    _, _, mask = light_flow(tables, books, burner)
+    return mask != 0
+
+
 def _burns_on(tables: Tables, books: Books, burner: int, dry: int) -> bool:
     """Tell whether some engine of a burner goes on when one load is dry."""
     row = tables.burners[burner]
+    if row.end_lit - row.first_lit == 1:
+        return False
     for place in range(row.first_lit, row.end_lit):
         fitted = tables.engines[tables.lit[place]]
         fed_by_dry = False
@@ -232,31 +243,14 @@ def _coast(tables: Tables, books: Books, leg: int, duration: float) -> None:
         if books.where[row.stage] != branch or books.usable[load] <= 0.0:
             continue
         kg = min(books.usable[load], row.boiloff_per_day * (duration / SECONDS_PER_DAY))
-        write_line(books, LINE_BOILED, leg, load, (0.0, 0.0, kg, books.branch_mass[branch], books.branch_clock[branch]))
-        if kg == books.usable[load]:
-            finish_line(books, 1, 0.0)
+        dried = 1.0 if kg == books.usable[load] else 0.0
+        mass, clock = books.branch_mass[branch], books.branch_clock[branch]
+        write_line(books, (LINE_BOILED, leg, load), (0.0, 0.0, kg, mass, clock, dried, 0.0))
         books.usable[load] -= kg
+        if books.usable[load] <= books.dry_mark[load]:
+            books.flow_of[row.stage] = -1
         books.boiled[load] += kg
         books.branch_mass[branch] -= kg
-
-
-def _exchange(tables: Tables, books: Books, op: int, order: tuple[int, int, float, int]) -> None:
-    """Do what moves mass without a manoeuvre."""
-    leg, part, amount, _ = order
-    if op == DRAW:
-        _draw(tables, books, leg, amount)
-    elif op == SEPARATE:
-        _separate(tables, books, leg, part)
-    elif op == RELEASE_PAYLOAD:
-        _release(tables, books, leg, (part, amount))
-    elif op == RELEASE_PROPELLANT:
-        _hand_over(tables, books, leg, (part, amount))
-    elif op == TAKE_PAYLOAD:
-        _take_payload(tables, books, leg, part)
-    elif op == TAKE_PROPELLANT:
-        _take_propellant(tables, books, leg, (part, amount))
-    elif op == DOCK:
-        _dock(tables, books, leg, part)
 
 
 def _draw(tables: Tables, books: Books, leg: int, amount: float) -> None:
@@ -265,7 +259,7 @@ def _draw(tables: Tables, books: Books, leg: int, amount: float) -> None:
     owed = pay(tables, books, leg, KILOGRAMS, amount * (1.0 + row.fraction))
     mass = books.branch_mass[row.branch]
     if owed > 0.0:
-        speed = _speed_of_lowest(tables, row.account)
+        speed = _speed_of_lowest(tables, books, row.account)
         delta_v = speed * math.log(mass / max(mass - owed, DRY_FRACTION * mass))
         if delta_v >= NOTHING_OWED:
             books.cause[leg] = cause_of(tables, books, leg)
@@ -274,7 +268,7 @@ def _draw(tables: Tables, books: Books, leg: int, amount: float) -> None:
     _note_spare(tables, books, leg, leg)
 
 
-def _speed_of_lowest(tables: Tables, account: int) -> float:
+def _speed_of_lowest(tables: Tables, books: Books, account: int) -> float:
     """Mixed exhaust speed of an account's engines on its lowest stage, attached or not; 0 without engines."""
     stages = len(tables.stages)
     for stage in range(stages):
@@ -284,119 +278,8 @@ def _speed_of_lowest(tables: Tables, account: int) -> float:
             thrust = 0.0
             mdot = 0.0
             for place in range(row.first_lit, row.end_lit):
-                fitted = tables.engines[tables.lit[place]]
-                thrust += fitted.count * fitted.thrust
-                mdot += fitted.count * fitted.thrust / (fitted.isp * 9.80665)
+                engine = tables.lit[place]
+                thrust += tables.engines[engine].count * tables.engines[engine].thrust
+                mdot += books.engine_flow[engine]
             return thrust / mdot
     return 0.0
-
-
-def _separate(tables: Tables, books: Books, leg: int, stage: int) -> None:
-    """Separate a stage with all below it; absent, say so."""
-    if books.where[stage] != tables.legs[leg].branch:
-        if books.left_in[stage] == leg:
-            return
-        write_line(books, LINE_ABSENT, leg, stage, (0.0, 0.0, 0.0, 0.0, 0.0))
-        return
-    for position in range(len(tables.stages)):
-        if books.order[position] == stage:
-            detach(tables, books, leg, position)
-            return
-
-
-def _release(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -> None:
-    """Release a payload, or part of it; what is not there is short."""
-    payload, wanted = order
-    branch = tables.legs[leg].branch
-    part = len(tables.stages) + payload
-    stage = books.payload_on[payload]
-    if stage < 0 or books.where[stage] != branch:
-        write_line(books, LINE_ABSENT, leg, part, (0.0, 0.0, 0.0, 0.0, 0.0))
-        return
-    kg = min(wanted, books.part_mass[part])
-    write_line(
-        books, LINE_RELEASE, leg, payload, (0.0, wanted, kg, books.branch_mass[branch], books.branch_clock[branch])
-    )
-    books.part_mass[part] -= kg
-    books.branch_mass[branch] -= kg
-    if kg == wanted and wanted == math.inf:
-        books.payload_on[payload] = -1
-
-
-def _hand_over(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -> None:
-    """Hand over usable propellant of a load; what is not there is short."""
-    load, wanted = order
-    branch = tables.legs[leg].branch
-    if books.where[tables.loads[load].stage] != branch:
-        write_line(books, LINE_ABSENT, leg, tables.loads[load].stage, (0.0, 0.0, 0.0, 0.0, 0.0))
-        return
-    kg = min(wanted, books.usable[load])
-    write_line(books, LINE_HANDED, leg, load, (0.0, wanted, kg, books.branch_mass[branch], books.branch_clock[branch]))
-    books.usable[load] -= kg
-    books.handed[load] += kg
-    books.branch_mass[branch] -= kg
-
-
-def _take_payload(tables: Tables, books: Books, leg: int, payload: int) -> None:
-    """Take a payload on, onto its stage or onto the topmost one."""
-    branch = tables.legs[leg].branch
-    stage = tables.payloads[payload].stage
-    if stage < 0:
-        for position in range(len(tables.stages)):
-            if books.where[books.order[position]] == branch:
-                stage = books.order[position]
-    if stage < 0 or books.where[stage] != branch:
-        write_line(books, LINE_ABSENT, leg, max(0, stage), (0.0, 0.0, 0.0, 0.0, 0.0))
-        return
-    kg = books.part_mass[len(tables.stages) + payload]
-    write_line(
-        books, LINE_TAKEN_PAYLOAD, leg, payload, (0.0, 0.0, kg, books.branch_mass[branch], books.branch_clock[branch])
-    )
-    books.payload_on[payload] = stage
-    books.branch_mass[branch] += kg
-
-
-def _take_propellant(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -> None:
-    """Take propellant on, a mass or to the load's capacity; its residual share never burns."""
-    load, wanted = order
-    branch = tables.legs[leg].branch
-    row = tables.loads[load]
-    if books.where[row.stage] != branch:
-        write_line(books, LINE_ABSENT, leg, row.stage, (0.0, 0.0, 0.0, 0.0, 0.0))
-        return
-    held = books.usable[load] + books.held[load] + books.residual[load]
-    kg = max(0.0, row.capacity - held) if wanted == math.inf else wanted
-    write_line(books, LINE_TAKEN, leg, load, (0.0, held, kg, books.branch_mass[branch], books.branch_clock[branch]))
-    residual = row.residual_fraction * kg
-    books.residual[load] += residual
-    books.usable[load] += kg - residual
-    books.taken[load] += kg
-    books.stock[load] += kg
-    books.branch_mass[branch] += kg
-
-
-def _dock(tables: Tables, books: Books, leg: int, docked: int) -> None:
-    """Dock what is left of a finished branch on top of the stack."""
-    branch = tables.legs[leg].branch
-    stages = len(tables.stages)
-    if not books.branch_started[docked]:
-        return
-    moved = 0
-    for position in range(stages):
-        stage = books.order[position - moved]
-        if books.where[stage] == docked:
-            for place in range(position - moved, stages - 1):
-                books.order[place] = books.order[place + 1]
-            books.order[stages - 1] = stage
-            moved += 1
-            mass = stage_mass(tables, books, stage)
-            books.where[stage] = branch
-            write_line(
-                books,
-                LINE_DOCKED,
-                leg,
-                stage,
-                (float(docked), 0.0, mass, books.branch_mass[branch], books.branch_clock[branch]),
-            )
-            books.branch_mass[branch] += mass
-            books.branch_mass[docked] -= mass

@@ -1,9 +1,14 @@
 """Opening the books: what is aboard before the first step."""
 
+from typing import Final
+
 from burntally_service.kernels.constants import G0
 from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, NOT_FLOWN, STAMP, Books, Tables
 
-__all__ = ["blank_books", "engines_flow", "load_up", "stage_mass", "wipe"]
+__all__ = ["DRY_FRACTION", "blank_books", "engines_flow", "load_up", "stage_mass", "wipe"]
+
+DRY_FRACTION: Final = 1e-9
+"""A load below this share of what was loaded is dry (P7)."""
 
 
 def blank_books(tables: Tables, lines: int) -> Books:
@@ -34,7 +39,7 @@ def blank_books(tables: Tables, lines: int) -> Books:
     loads, engines, stages = len(tables.loads), len(tables.engines), len(tables.stages)
     branches, legs, payloads = len(tables.branches), len(tables.legs), len(tables.payloads)
     sizes = (
-        *(loads,) * 10,
+        *(loads,) * 11,
         *(engines,) * 3,
         len(tables.feeds),
         stages + payloads,
@@ -52,6 +57,10 @@ def blank_books(tables: Tables, lines: int) -> Books:
         [0] * stages,
         list(range(stages)),
         [-1] * stages,
+        [-1] * stages,
+        [0.0] * stages,
+        [0.0] * stages,
+        [0] * stages,
         [0] * stages,
         [0.0] * stages,
         *by_branch,
@@ -63,6 +72,8 @@ def blank_books(tables: Tables, lines: int) -> Books:
         [0] * legs,
         [0] * legs,
         *after,
+        [-1] * legs,
+        [0] * legs,
         [0.0] * marks,
         [0.0] * marks,
         [0.0] * marks,
@@ -112,6 +123,7 @@ def load_up(tables: Tables, books: Books) -> None:
         books.held[load] = content.held_back
         books.usable[load] = max(0.0, content.mass - residual - content.held_back)
         books.stock[load] = content.mass
+        books.dry_mark[load] = DRY_FRACTION * content.mass
     engines_flow(tables, books)
     for payload in range(len(tables.payloads)):
         rider = tables.payloads[payload]
@@ -233,6 +245,7 @@ def wipe(books: Books) -> None:
         books.where[stage] = 0
         books.order[stage] = stage
         books.left_in[stage] = -1
+        books.flow_of[stage] = -1
         books.unbalanced[stage] = 0
     for place in range(len(books.rule_sum)):
         books.rule_sum[place] = 0.0
@@ -251,6 +264,7 @@ def _wipe_legs(books: Books) -> None:
         books.owed[leg] = 0.0
         books.handover[leg] = 0
         books.unlit[leg] = 0
+        books.line_begin[leg] = -1
     for mark in range(len(books.cause)):
         books.cause[mark] = 0
         books.spare_stage[mark] = -1

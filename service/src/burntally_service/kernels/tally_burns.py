@@ -6,7 +6,7 @@ Every function here reads `Tables` and changes `Books`; the comments name the bo
 import math
 from typing import Final
 
-from burntally_service.kernels.tally_flow import can_burn, finish_line, light_flow, spare_of, wants_ignition, write_line
+from burntally_service.kernels.tally_flow import light_flow, spare_of, wants_ignition, write_line
 from burntally_service.kernels.tally_rows import (
     CONTINGENCY,
     KILOGRAMS,
@@ -20,7 +20,7 @@ from burntally_service.kernels.tally_rows import (
 )
 from burntally_service.kernels.tally_stack import shed
 
-__all__ = ["NOTHING_OWED", "any_can_burn", "burn_out", "pay"]
+__all__ = ["NOTHING_OWED", "burn_out", "pay"]
 
 UNBALANCED_FRACTION: Final = 0.005
 """A load of a mixture left over by more than this share of what was loaded is told."""
@@ -35,53 +35,62 @@ NOTHING_OWED: Final = 1e-9
 def _draw_down(tables: Tables, books: Books, stage: int, time: float) -> None:
     """Take the flow of a stage over a time out of its loads."""
     row = tables.stages[stage]
+    usable, flow, burned = books.usable, books.flow, books.burned
     for load in range(row.first_load, row.end_load):
-        if books.flow[load] > 0.0:
-            kg = books.flow[load] * time
-            books.usable[load] = max(0.0, books.usable[load] - kg)
-            books.burned[load] += kg
+        rate = flow[load]
+        if rate > 0.0:
+            kg = rate * time
+            left = usable[load] - kg
+            # Rounding may ask for a trifle more than there is.
+            usable[load] = left if left > 0.0 else 0.0
+            burned[load] += kg
+            if left <= books.dry_mark[load]:
+                books.flow_of[stage] = -1
 
 
-def _ignite(tables: Tables, books: Books, leg: int, burner: int) -> None:
+def _ignite(tables: Tables, books: Books, leg: int, burner: int, mask: int) -> None:
     """Light what can burn of a burner, then take the losses: an engine that they leave dry has been lit all the same."""
     row = tables.burners[burner]
     branch = tables.legs[leg].branch
+    first = tables.stages[row.stage].first_engine
     stamp = books.count[STAMP]
     for place in range(row.first_lit, row.end_lit):
         engine = tables.lit[place]
-        if can_burn(tables, books, engine):
-            books.used[engine] += 1.0
+        if mask >> (engine - first) & 1:
+            used = books.used[engine] + 1.0
+            books.used[engine] = used
             books.lit_at[engine] = stamp
+            if used >= tables.engines[engine].max_ignitions:
+                books.flow_of[row.stage] = -1
     for place in range(row.first_lit, row.end_lit):
         engine = tables.lit[place]
-        if books.lit_at[engine] == stamp:
+        if mask >> (engine - first) & 1:
             lost = 0.0
+            mass = books.branch_mass[branch]
             if tables.engines[engine].loss_per_ignition > 0.0:
-                lost = _lose(tables, books, engine)
+                lost = _lose(tables, books, engine, row.stage)
+                books.branch_mass[branch] = mass - lost
             write_line(
-                books,
-                LINE_IGNITION,
-                leg,
-                engine,
-                (0.0, 0.0, lost, books.branch_mass[branch], books.branch_clock[branch]),
+                books, (LINE_IGNITION, leg, engine), (0.0, 0.0, lost, mass, books.branch_clock[branch], 0.0, 0.0)
             )
-            books.branch_mass[branch] -= lost
 
 
-def _lose(tables: Tables, books: Books, engine: int) -> float:
+def _lose(tables: Tables, books: Books, engine: int, stage: int) -> float:
     """Take the loss of one ignition out of an engine's feeds, at their ratio, until the first is dry."""
     row = tables.engines[engine]
-    wanted = row.count * row.loss_per_ignition / books.engine_flow[engine]
-    time = wanted
+    time = row.count * row.loss_per_ignition / books.engine_flow[engine]
     for feed in range(row.first_feed, row.end_feed):
         time = min(time, books.usable[tables.feeds[feed].load] / books.feed_flow[feed])
     lost = 0.0
     for feed in range(row.first_feed, row.end_feed):
         load = tables.feeds[feed].load
         kg = books.feed_flow[feed] * time
-        books.usable[load] = max(0.0, books.usable[load] - kg)
+        left = books.usable[load] - kg
+        books.usable[load] = left if left > 0.0 else 0.0
         books.lost[load] += kg
         lost += kg
+        if left <= books.dry_mark[load]:
+            books.flow_of[stage] = -1
     return lost
 
 
@@ -90,30 +99,34 @@ def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int,
     purpose, amount = order
     branch = tables.legs[leg].branch
     stage = tables.burners[burner].stage
+    clock = books.branch_clock[branch]
     thrust, mdot, mask = light_flow(tables, books, burner)
     while mdot > 0.0:
         mass = books.branch_mass[branch]
         speed = thrust / mdot
         time, first_dry = spare_of(tables, books, stage)
         spare = mdot * time
-        kg = amount if purpose == KILOGRAMS else -mass * math.expm1(-amount / speed)
-        enough = kg <= spare
-        if not enough:
-            kg = spare
+        if purpose == KILOGRAMS:
+            kg = min(amount, spare)
+            paid = 0.0
+            left = amount - kg
+        else:
+            kg = -mass * math.expm1(-amount / speed)
+            if kg <= spare:
+                paid = amount
+            else:
+                kg = spare
+                paid = speed * math.log(mass / (mass - kg))
+            left = amount - paid
         _draw_down(tables, books, stage, kg / mdot)
         books.branch_mass[branch] = mass - kg
-        if purpose == KILOGRAMS:
-            given = 0.0
-            amount = 0.0 if enough else amount - kg
-        else:
-            given = amount if enough else speed * math.log(mass / (mass - kg))
-            amount -= given
         kind = LINE_DRAW if purpose == KILOGRAMS else LINE_BURN
-        write_line(books, kind, leg, burner, (purpose, given, kg, mass, books.branch_clock[branch]))
-        finish_line(books, mask, spare - kg)
-        if enough:
+        write_line(books, (kind, leg, burner), (purpose, paid, kg, mass, clock, mask, spare - kg))
+        if left <= 0.0:
             return 0.0
+        amount = left
         books.usable[first_dry] = 0.0
+        books.flow_of[stage] = -1
         _mark_unbalanced(tables, books, stage, first_dry)
         thrust, mdot, mask = light_flow(tables, books, burner)
     return amount
@@ -171,8 +184,9 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
     5.0
     """
     stages = len(tables.stages)
-    branch = tables.legs[leg].branch
-    base = tables.legs[leg].account * stages
+    row = tables.legs[leg]
+    branch = row.branch
+    base = row.account * stages
     left = amount
     # Kilograms owed are counted as a delta-v first, and held against the tolerance then.
     tolerance = TINY if purpose == KILOGRAMS else NOTHING_OWED
@@ -183,37 +197,33 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
         if books.where[stage] != branch:
             continue
         burner = tables.burner_of[base + stage]
-        if burner < 0 or not any_can_burn(tables, books, burner):
-            # Only the open account passes a stage that merely lacks an ignition; named payers have a finding of their own.
+        mask = 0
+        if burner >= 0:
+            _, _, mask = light_flow(tables, books, burner)
+        if mask == 0:
+            # Only the open account passes a stage that merely lacks an ignition; named payers have a finding of their
+            # own.
             if burner >= 0 and base == 0 and wants_ignition(tables, books, burner):
                 passed = stage
             lowest = stage
             continue
-        if purpose != KILOGRAMS and position > 0:
-            shed(tables, books, leg, position)
-        if lowest >= 0 and books.where[lowest] == branch:
-            books.unlit[leg] = 1
+        if lowest >= 0:
+            if purpose != KILOGRAMS:
+                shed(tables, books, leg, position)
+            if books.where[lowest] == branch:
+                books.unlit[leg] = 1
         if purpose == MANOEUVRE:
-            _ignite(tables, books, leg, burner)
+            _ignite(tables, books, leg, burner, mask)
         before = left
         left = _burn(tables, books, leg, burner, (purpose, left))
         if left < before:
-            if passed >= 0 and purpose <= CONTINGENCY and not tables.legs[leg].quiet:
+            if passed >= 0 and purpose <= CONTINGENCY and not row.quiet:
                 books.handover[leg] = passed + 1
             passed = stage
         lowest = stage
         if left < tolerance:
             return 0.0
     return left
-
-
-def any_can_burn(tables: Tables, books: Books, burner: int) -> bool:
-    """Tell whether any engine of a burner can burn."""
-    row = tables.burners[burner]
-    for place in range(row.first_lit, row.end_lit):
-        if can_burn(tables, books, tables.lit[place]):
-            return True
-    return False
 
 
 def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
@@ -250,6 +260,7 @@ def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
     delta_v = 0.0
     if burner < 0:
         return delta_v
+    books.flow_of[stage] = -1
     thrust, mdot, _ = light_flow(tables, books, burner)
     while mdot > 0.0:
         time, first_dry = spare_of(tables, books, stage)
@@ -258,7 +269,9 @@ def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
         mass -= kg
         row = tables.stages[stage]
         for load in range(row.first_load, row.end_load):
-            books.usable[load] = max(0.0, books.usable[load] - books.flow[load] * time)
+            left = books.usable[load] - books.flow[load] * time
+            books.usable[load] = left if left > 0.0 else 0.0
         books.usable[first_dry] = 0.0
+        books.flow_of[stage] = -1
         thrust, mdot, _ = light_flow(tables, books, burner)
     return delta_v

@@ -1,32 +1,28 @@
 """What can burn on a stage, how fast its loads go, and the lines in which the ledger tells it."""
 
 import math
-from typing import Final
-
 from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, STAMP, Books, Tables
 
-__all__ = ["DRY_FRACTION", "can_burn", "finish_line", "light_flow", "spare_of", "wants_ignition", "write_line"]
-
-DRY_FRACTION: Final = 1e-9
-"""A load below this share of what was loaded is dry (P7)."""
+__all__ = ["can_burn", "light_flow", "spare_of", "wants_ignition", "write_line"]
 
 
-def write_line(books: Books, kind: int, leg: int, part: int, entry: tuple[float, float, float, float, float]) -> None:
+def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...]) -> None:
     """Write one line of the ledger, if there is room; the count grows in any case.
 
     Parameters
     ----------
     books : Books
         Changed: `lines`, `count`.
-    kind, leg, part : int
-        What the line tells, of which leg and part, [-].
+    head : tuple of int
+        Kind of line, leg, part, [-].
     entry : tuple of float
-        Purpose [-], delta-v [m/s], mass that moves [kg], mass before [kg], time [s].
+        Purpose [-], delta-v [m/s], mass that moves [kg], mass before [kg], time [s], mask of the engines lit [-], mass
+        that they could still burn together [kg].
 
     Returns
     -------
     None
-        The line is written, its mask and spare [kg] left blank.
+        The line is written, masses in [kg].
 
     References
     ----------
@@ -36,24 +32,25 @@ def write_line(books: Books, kind: int, leg: int, part: int, entry: tuple[float,
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> books = blank_books(Tables(*([],) * 14), 1)
-    >>> write_line(books, 0, 0, 0, (0.0, 1.0, 2.0, 3.0, 4.0))
+    >>> write_line(books, (0, 0, 0), (0.0, 1.0, 2.0, 3.0, 4.0, 0.0, 0.0))
     >>> books.lines[4:8]
     [1.0, 2.0, 3.0, 4.0]
     """
-    start = books.count[LINES] * LINE_WIDTH
-    books.count[LINES] += 1
+    count = books.count
+    start = count[LINES] * LINE_WIDTH
+    count[LINES] += 1
     lines = books.lines
     if start + LINE_WIDTH <= len(lines):
-        lines[start] = float(kind)
-        lines[start + 1] = float(leg)
-        lines[start + 2] = float(part)
+        lines[start] = float(head[0])
+        lines[start + 1] = float(head[1])
+        lines[start + 2] = float(head[2])
         lines[start + 3] = entry[0]
         lines[start + 4] = entry[1]
         lines[start + 5] = entry[2]
         lines[start + 6] = entry[3]
         lines[start + 7] = entry[4]
-        lines[start + 8] = 0.0
-        lines[start + 9] = 0.0
+        lines[start + 8] = entry[5]
+        lines[start + 9] = entry[6]
 
 
 def can_burn(tables: Tables, books: Books, engine: int) -> bool:
@@ -63,7 +60,7 @@ def can_burn(tables: Tables, books: Books, engine: int) -> bool:
         return False
     for feed in range(row.first_feed, row.end_feed):
         load = tables.feeds[feed].load
-        if books.usable[load] <= DRY_FRACTION * books.stock[load]:
+        if books.usable[load] <= books.dry_mark[load]:
             return False
     return True
 
@@ -76,7 +73,7 @@ def light_flow(tables: Tables, books: Books, burner: int) -> tuple[float, float,
     tables : Tables
         What is tallied.
     books : Books
-        Changed: `flow` of the stage's loads, [kg/s].
+        Changed: `flow` of the stage's loads, [kg/s], and what is kept of it.
     burner : int
         Index of the burner, [-].
 
@@ -102,22 +99,32 @@ def light_flow(tables: Tables, books: Books, burner: int) -> tuple[float, float,
     (0.0, 0.0, 0)
     """
     row = tables.burners[burner]
-    stage = tables.stages[row.stage]
+    place = row.stage
+    if books.flow_of[place] == burner:
+        return books.flow_thrust[place], books.flow_mdot[place], books.flow_mask[place]
+    stage = tables.stages[place]
     flow = books.flow
     for load in range(stage.first_load, stage.end_load):
         flow[load] = 0.0
     thrust = 0.0
     mdot = 0.0
     mask = 0
-    for place in range(row.first_lit, row.end_lit):
-        engine = tables.lit[place]
+    lasting = True
+    for index in range(row.first_lit, row.end_lit):
+        engine = tables.lit[index]
+        fitted = tables.engines[engine]
+        lasting = lasting and books.used[engine] < fitted.max_ignitions
         if can_burn(tables, books, engine):
-            fitted = tables.engines[engine]
             thrust += fitted.count * fitted.thrust
             mdot += books.engine_flow[engine]
             mask |= 1 << (engine - stage.first_engine)
             for feed in range(fitted.first_feed, fitted.end_feed):
                 flow[tables.feeds[feed].load] += books.feed_flow[feed]
+    # An engine without an ignition left burns only while it is lit, so its flow holds for this moment alone.
+    books.flow_of[place] = burner if lasting else -1
+    books.flow_thrust[place] = thrust
+    books.flow_mdot[place] = mdot
+    books.flow_mask[place] = mask
     return thrust, mdot, mask
 
 
@@ -164,42 +171,6 @@ def spare_of(tables: Tables, books: Books, stage: int) -> tuple[float, int]:
     return shortest, first_dry
 
 
-def finish_line(books: Books, mask: int, spare: float) -> None:
-    """Add to the line just written which engines burned, and what they could still burn.
-
-    Parameters
-    ----------
-    books : Books
-        Changed: `lines`.
-    mask : int
-        Bit n set: the stage's engine n burned, [-].
-    spare : float
-        Propellant that the same engines could still burn together, [kg].
-
-    Returns
-    -------
-    None
-        The line is complete, masses in [kg].
-
-    References
-    ----------
-    .. [1] The project's bookkeeping rules; no published source.
-
-    Examples
-    --------
-    >>> from burntally_service.kernels.tally_books import blank_books
-    >>> books = blank_books(Tables(*([],) * 14), 1)
-    >>> write_line(books, 0, 0, 0, (0.0, 1.0, 2.0, 3.0, 4.0))
-    >>> finish_line(books, 3, 7.0)
-    >>> books.lines[8:]
-    [3.0, 7.0]
-    """
-    start = (books.count[LINES] - 1) * LINE_WIDTH
-    if start + LINE_WIDTH <= len(books.lines):
-        books.lines[start + 8] = float(mask)
-        books.lines[start + 9] = spare
-
-
 def wants_ignition(tables: Tables, books: Books, burner: int) -> bool:
     """Tell whether an engine of a burner has propellant in all its feeds, and only lacks an ignition."""
     row = tables.burners[burner]
@@ -211,7 +182,7 @@ def wants_ignition(tables: Tables, books: Books, burner: int) -> bool:
         fitted = tables.engines[engine]
         for feed in range(fitted.first_feed, fitted.end_feed):
             load = tables.feeds[feed].load
-            fed = fed and books.usable[load] > DRY_FRACTION * books.stock[load]
+            fed = fed and books.usable[load] > books.dry_mark[load]
         if fed:
             return True
     return False

@@ -12,17 +12,15 @@ from burntally_service.kernels.tally import tally
 from burntally_service.kernels.tally_books import wipe
 from burntally_service.kernels.tally_rows import (
     ADD_AT,
-    BEGIN,
     DELTA_V,
-    END,
     KG,
     KIND,
-    LEG,
     LINE_BOILED,
     LINE_BURN,
     LINE_DOCKED,
     LINE_DRAW,
     LINE_HANDED,
+    LINE_IGNITION,
     LINE_SEPARATION,
     LINE_TAKEN,
     LINE_WIDTH,
@@ -30,8 +28,6 @@ from burntally_service.kernels.tally_rows import (
     MASK,
     MASS,
     PART,
-    PURPOSE,
-    RESERVE,
     SPARE,
     Books,
     Tables,
@@ -71,7 +67,8 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     books : Books
         Its books, with all lines.
     walk : list of lists of float
-        Scratch of five rows: slack by mark [m/s], then state, reach [kg], mask and handover by stage; changed.
+        Scratch of six rows: slack by mark [m/s], then state, reach [kg], mask and handover by stage, then the stage
+        that drew last (-1 at first); changed.
 
     Returns
     -------
@@ -87,22 +84,25 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> empty = Tables(*([],) * 14)
-    >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], []])
+    >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], [], [-1.0]])
     """
-    line = books.count[LINES] - 1
-    for place in range(len(tables.steps) - 1, -1, -1):
-        step = tables.steps[place]
-        if step.op == END:
-            row = tables.legs[step.leg]
-            if row.reserves:
-                mark = len(tables.legs) + row.branch
-                if books.reserve[row.branch] > 0.0:
-                    walk[0][mark] = _slack_at(books, walk, mark)
-                line = _walk_lines(tables, books, walk, (line, step.leg, mark))
-            if row.charged:
-                walk[0][step.leg] = _slack_at(books, walk, step.leg)
-        elif step.op == BEGIN:
-            line = _walk_lines(tables, books, walk, (line, step.leg, -1))
+    legs = len(tables.legs)
+    end = books.count[LINES]
+    # Legs stand in the order in which they were tallied, and so do their lines.
+    for leg in range(legs - 1, -1, -1):
+        row = tables.legs[leg]
+        if books.line_begin[leg] < 0:
+            continue
+        after = books.line_end[leg]
+        if row.reserves:
+            mark = legs + row.branch
+            if books.reserve[row.branch] > 0.0:
+                walk[0][mark] = _slack_at(books, walk, mark)
+            _walk_lines(tables, books, walk, (end - 1, after, mark))
+        if row.charged:
+            walk[0][leg] = _slack_at(books, walk, leg)
+        _walk_lines(tables, books, walk, (after - 1, books.line_begin[leg], leg))
+        end = books.line_begin[leg]
 
 
 def _slack_at(books: Books, walk: list[list[float]], mark: int) -> float:
@@ -124,22 +124,16 @@ def _slack_at(books: Books, walk: list[list[float]], mark: int) -> float:
     return books.spare_speed[mark] * math.log(mass / (mass - reach))
 
 
-def _walk_lines(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int, int]) -> int:
-    """Walk backward over the lines of a leg, its reserve's alone if a mark is given; return the next line."""
-    line, leg, mark = at
-    while line >= 0:
+def _walk_lines(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int, int]) -> None:
+    """Walk backward over some lines of a leg, or of the reserve after it."""
+    last, first, mark = at
+    for line in range(last, first - 1, -1):
         start = line * LINE_WIDTH
         kind = int(books.lines[start + KIND])
-        if int(books.lines[start + LEG]) != leg:
-            break
-        if mark >= 0 and int(books.lines[start + PURPOSE]) != RESERVE:
-            break
         if kind <= LINE_DRAW:
-            _walk_draw(tables, books, walk, (start, mark if mark >= 0 else leg))
-        else:
+            _walk_draw(tables, books, walk, (start, mark))
+        elif kind != LINE_IGNITION:
             _walk_event(tables, books, walk, start)
-        line -= 1
-    return line
 
 
 def _walk_event(tables: Tables, books: Books, walk: list[list[float]], start: int) -> None:
@@ -167,9 +161,12 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
     drawer = tables.burners[int(books.lines[start + PART])].stage
     mask = books.lines[start + MASK]
     spare = books.lines[start + SPARE]
-    for stage in range(len(tables.stages)):
-        if stage != drawer and walk[1][stage] == _KNOWN:
-            walk[1][stage] = _MIXED
+    if drawer != int(walk[5][0]):
+        # What another stage draws in between depends on the mass that this one has lost.
+        for stage in range(len(tables.stages)):
+            if stage != drawer and walk[1][stage] == _KNOWN:
+                walk[1][stage] = _MIXED
+        walk[5][0] = float(drawer)
     if walk[1][drawer] == _KNOWN and walk[3][drawer] != mask:
         walk[1][drawer] = _MIXED
     if walk[1][drawer] == _NONE or (walk[1][drawer] == _KNOWN and spare < walk[2][drawer]):

@@ -123,13 +123,10 @@ def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
         books.branch_mass[branch] -= mass
         if target >= 0:
             books.branch_mass[target] += mass
-        write_line(
-            books,
-            LINE_SEPARATION,
-            leg,
-            stage,
-            (float(target), 0.0, mass, books.branch_mass[branch] + mass, books.branch_clock[branch]),
-        )
+        before = books.branch_mass[branch] + mass
+        entry = (float(target), 0.0, mass, before, books.branch_clock[branch], 0.0, 0.0)
+        write_line(books, (LINE_SEPARATION, leg, stage), entry)
+        books.flow_of[stage] = -1
         row = tables.stages[stage]
         for load in range(row.first_load, row.end_load):
             books.usable[load] += books.held[load]
