@@ -2,6 +2,7 @@
 
 import subprocess
 import sys
+from pathlib import Path
 
 import pytest
 
@@ -28,3 +29,16 @@ def test_telling_the_version_imports_no_contract() -> None:
         "import sys\nfrom burntally.cli import main\nassert main(['--version']) == 0\nprint('msgspec' in sys.modules)"
     )
     assert run(code).splitlines()[-1] == "False"
+
+
+def test_a_check_in_process_loads_nothing_that_it_does_not_need(tmp_path: Path) -> None:
+    """A whole budget, and neither the HTTP library nor a numbers library."""
+    from burntally_service.api.examples import example_bytes
+
+    (tmp_path / "design.json").write_bytes(example_bytes("create_budget"))
+    code = (
+        "import sys\nfrom burntally.cli import main\n"
+        f"main(['check', {str(tmp_path / 'design.json')!r}])\n"
+        f"print([name for name in {HEAVY} if name in sys.modules])"
+    )
+    assert run(code).splitlines()[-1] == "[]"
