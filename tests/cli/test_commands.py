@@ -2,6 +2,8 @@
 
 import json
 from collections.abc import Callable
+from contextlib import redirect_stdout
+from io import StringIO
 from pathlib import Path
 from typing import Any
 
@@ -263,3 +265,10 @@ def test_serve_gives_the_service_what_was_typed(installed: Installed) -> None:
 def test_a_server_that_cannot_start_says_why(error: BaseException, code: ExitCode, installed: Installed) -> None:
     installed(raising(error))
     assert main(["serve"]) == code
+
+
+def test_a_stream_that_is_no_terminal_takes_the_text_too(design: str, installed: Installed) -> None:
+    installed(answering(made_budgets.closing()))
+    with redirect_stdout(StringIO()) as stream:
+        main(["check", design])
+    assert stream.getvalue() == render(made_budgets.closing())

@@ -5,7 +5,7 @@ from pathlib import Path
 import msgspec
 import pytest
 
-from burntally.cli.columns import Column, grouped, line_up, mass_decimals
+from burntally.cli.columns import Column, grouped, hang, line_up, mass_decimals
 from burntally.cli.findings import cautions_text, findings_text
 from burntally.cli.text import NOTICE, render, verdict
 from tests.cli import made_budgets
@@ -74,3 +74,14 @@ def test_a_narrow_margin_is_not_rounded_away(margin: float, said: str) -> None:
 
 def test_nothing_found_is_nothing_said() -> None:
     assert (findings_text([]), cautions_text([])) == ("", "")
+
+
+def test_a_remedy_of_several_findings_is_told_once() -> None:
+    finding = made_budgets.owing().findings[0]
+    text = findings_text([finding, finding])
+    assert (text.count("load 80.5 kg more"), text.splitlines()[-1]) == (1, "      remedy: as above")
+
+
+def test_words_hang_beside_their_head_and_are_not_broken() -> None:
+    pointer = "/" + "a" * 60
+    assert hang(" " * 100 + "x ", f"one two {pointer}") == [" " * 100 + "x one two", " " * 102 + pointer]

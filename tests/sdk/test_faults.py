@@ -1,17 +1,20 @@
 """What a client does when the network, the service or an answer fails; the same for both clients."""
 
-from collections.abc import Callable, Iterable
+import asyncio
+import time
+from collections.abc import AsyncIterator, Callable, Iterable, Iterator
 from typing import Any
 
 import httpx2
 import msgspec
 import pytest
 
-from burntally.client import errors
+from burntally.client import connect, connect_async, errors
 from burntally.model.operations import Bodies, Problem
 
 Ask = Callable[..., Any]
 
+URL = "http://burntally.test"
 BODIES = b'{"bodies":[]}'
 
 
@@ -183,3 +186,33 @@ def test_one_in_ten_requests_may_fail(ask: Ask, pauses: list[float]) -> None:
         scenes: list[httpx2.Response | Exception | int] = [dropped] * (number % 10 == 0)
         assert ask(Script(*scenes, good()), "bodies") == Bodies(bodies=[])
     assert len([pause for pause in pauses if pause > 0.0]) == 5
+
+
+def test_a_trickled_answer_is_cut_off() -> None:
+    """Each piece comes in time, and the whole does not."""
+
+    def trickle() -> Iterator[bytes]:
+        for _ in range(100):
+            time.sleep(0.02)
+            yield b" "
+
+    with (
+        connect(URL, transport=httpx2.MockTransport(lambda _: httpx2.Response(200, content=trickle()))) as client,
+        pytest.raises(errors.TimedOut),
+    ):
+        client.bodies(timeout_s=0.1)
+
+
+def test_a_trickled_answer_is_cut_off_for_an_event_loop_too() -> None:
+    async def trickle() -> AsyncIterator[bytes]:
+        for _ in range(100):
+            await asyncio.sleep(0.02)
+            yield b" "
+
+    async def ask() -> None:
+        network = httpx2.MockTransport(lambda _: httpx2.Response(200, content=trickle()))
+        async with connect_async(URL, transport=network) as client:
+            await client.bodies(timeout_s=0.1)
+
+    with pytest.raises(errors.TimedOut):
+        asyncio.run(ask())

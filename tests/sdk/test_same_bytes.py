@@ -6,6 +6,7 @@ from collections.abc import Callable, Iterator
 from typing import Any
 
 import httpx2
+import msgspec
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
@@ -92,6 +93,46 @@ def test_http_gives_the_bytes_of_the_installed_service(
 def test_the_asynchronous_client_gives_them_too(operation: str, value: Any, inprocess: Way, app: Any) -> None:
     args, options = arguments(operation, value)
     assert call_async(app, *args, **options).body == inprocess(*args, **options).body
+
+
+METHODS = {
+    "create_budget": "budget",
+    "compute_performance": "performance",
+    "plan_transfer": "transfer",
+    "list_bodies": "bodies",
+    "get_body": "body",
+    "list_rules": "rules",
+    "get_rules": "rule",
+}
+
+
+def typed(method: Any, operation: str, value: Any) -> Any:
+    """Call a method with the request as a person has it: nothing, a name, or plain values."""
+    if value is None:
+        return method()
+    return method(value if OPERATIONS[operation].takes_body else value["name"])
+
+
+@pytest.mark.parametrize("operation,value", examples())
+def test_a_method_gives_what_its_operation_gives(operation: str, value: Any) -> None:
+    with connect() as client:
+        told = typed(getattr(client, METHODS[operation]), operation, value)
+        args, options = arguments(operation, value)
+        assert told == decode_answer(client.call(*args, **options), type(told))
+
+
+@pytest.mark.parametrize("operation,value", examples())
+def test_an_awaited_method_gives_the_same(operation: str, value: Any) -> None:
+    async def ask() -> Any:
+        async with connect_async() as client:
+            return await typed(getattr(client, METHODS[operation]), operation, value)
+
+    with connect() as client:
+        assert asyncio.run(ask()) == typed(getattr(client, METHODS[operation]), operation, value)
+
+
+def decode_answer(answer: Answer, kind: Any) -> Any:
+    return msgspec.json.decode(answer.body, type=kind)
 
 
 @given(mass=st.floats(0.0, 1e6), isp=st.floats(150.0, 500.0), altitude=st.floats(2e5, 1e7))

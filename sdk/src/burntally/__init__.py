@@ -134,7 +134,6 @@ if not TYPE_CHECKING:  # with it, a checker would take any name
         Building the contract's types takes a tenth of a second, which `burntally --version` need not wait for.
         """
         if name in __all__:
-            for home in map(import_module, _HOMES):
-                if name in home.__all__:
-                    return getattr(home, name)
+            home = next(home for home in map(import_module, _HOMES) if name in home.__all__)
+            return getattr(home, name)
         raise AttributeError(f"module {__name__!r} has no attribute {name!r}")

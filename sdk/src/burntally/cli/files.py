@@ -9,8 +9,9 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from json import JSONDecodeError
 from pathlib import Path
-from typing import Final
+from typing import Any, Final
 
+from burntally.model._parse import is_object
 from burntally.model.decode import decode_builtins, parse_json
 from burntally.model.design import Design
 from burntally.model.errors import ContractError, Violation
@@ -123,7 +124,7 @@ def read_design_file(path: Path) -> DesignFile:
     """
     parsed = _parsed(path, path.read_bytes(), "")
     sources = {"": path}
-    if isinstance(parsed, dict):
+    if is_object(parsed):
         for name in _PARTS:
             reference = _reference(parsed.get(name))
             if reference is not None:
@@ -134,9 +135,8 @@ def read_design_file(path: Path) -> DesignFile:
 
 
 def _reference(part: object) -> str | None:
-    if isinstance(part, dict) and list(part) == [_REFERENCE] and isinstance(part[_REFERENCE], str):
-        return str(part[_REFERENCE])
-    return None
+    reference = part.get(_REFERENCE) if is_object(part) and len(part) == 1 else None
+    return reference if isinstance(reference, str) else None
 
 
 def _inside(path: Path, reference: str, pointer: str) -> Path:
@@ -211,11 +211,12 @@ def _yaml(text: str) -> object:
     except ImportError as error:
         raise _SyntaxFaultError("is YAML, which needs `pip install burntally[cli]`") from error
     try:
-        parsed: object = YAML(typ="safe", pure=True).load(text)
+        loader: Any = YAML(typ="safe", pure=True)
+        parsed: object = loader.load(text)
     except MarkedYAMLError as error:
-        mark = error.problem_mark
+        mark: Any = getattr(error, "problem_mark", None)
         line, column = (mark.line + 1, mark.column + 1) if mark is not None else (None, None)
-        raise _SyntaxFaultError(f"is not YAML: {error.problem}", line, column) from error
+        raise _SyntaxFaultError(f"is not YAML: {getattr(error, 'problem', None)}", line, column) from error
     except (YAMLError, ValueError) as error:
         raise _SyntaxFaultError(f"is not YAML: {error}") from error
     return parsed

@@ -29,10 +29,11 @@ def findings_text(findings: Sequence[Finding]) -> str:
     known = {severity: rank for rank, severity in enumerate(_SEVERITIES)}
     ranked = sorted(findings, key=lambda finding: known.get(finding.severity, len(known)))
     heads = _aligned([(finding.severity, finding.code, finding.pointer) for finding in ranked])
+    told: set[str] = set()
     return "\n".join(
         line
         for head, finding in zip(heads, ranked, strict=True)
-        for line in (*hang(head, finding.message), *_remedy_lines(finding.remedies))
+        for line in (*hang(head, finding.message), *_remedy_lines(finding.remedies, told))
     )
 
 
@@ -60,8 +61,13 @@ def cautions_text(cautions: Sequence[Caution]) -> str:
     )
 
 
-def _remedy_lines(remedies: Sequence[Remedy]) -> list[str]:
-    return [line for remedy in remedies for line in hang("      remedy: ", _remedy(remedy))]
+def _remedy_lines(remedies: Sequence[Remedy], told: set[str]) -> list[str]:
+    """Write remedies, each once: one change often mends several findings, and is one change all the same."""
+    words = [_remedy(remedy) for remedy in remedies]
+    new = [text for text in words if text not in told]
+    told.update(new)
+    again = ["      remedy: as above"] if words and not new else []
+    return [line for text in new for line in hang("      remedy: ", text)] + again
 
 
 def _remedy(remedy: Remedy) -> str:
