@@ -7,40 +7,45 @@ import pytest
 
 from burntally.cli.columns import Column, grouped, hang, line_up, mass_decimals
 from burntally.cli.findings import cautions_text, findings_text
-from burntally.cli.text import NOTICE, render, verdict
+from burntally.cli.text import NOTICE, verdict
 from tests.cli import made_budgets
+from tests.cli.golden_texts import EXAMPLES, GOLDEN, example_text, made_text
 
-GOLDEN = Path(__file__).parent / "golden"
 NAMES = made_budgets.__all__
-
-
-def text_of(name: str) -> str:
-    return render(getattr(made_budgets, name)())
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_a_budget_reads_as_agreed(name: str) -> None:
-    assert text_of(name) == (GOLDEN / f"{name}.txt").read_text(encoding="utf-8")
+    assert made_text(name) == (GOLDEN / f"{name}.txt").read_text(encoding="utf-8")
+
+
+@pytest.mark.parametrize("path", EXAMPLES, ids=lambda path: path.name)
+def test_an_example_reads_as_agreed(path: Path) -> None:
+    assert example_text(path) == (GOLDEN / "examples" / f"{path.name}.txt").read_text(encoding="utf-8")
+
+
+def test_every_text_is_of_an_example() -> None:
+    assert [path.stem for path in sorted((GOLDEN / "examples").iterdir())] == [path.name for path in EXAMPLES]
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_the_verdict_is_the_first_line(name: str) -> None:
-    assert text_of(name).splitlines()[0] == verdict(getattr(made_budgets, name)())
+    assert made_text(name).splitlines()[0] == verdict(getattr(made_budgets, name)())
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_a_line_has_no_space_at_its_end(name: str) -> None:
-    assert [line for line in text_of(name).splitlines() if line != line.rstrip()] == []
+    assert [line for line in made_text(name).splitlines() if line != line.rstrip()] == []
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_every_text_bears_the_notice(name: str) -> None:
-    assert NOTICE in text_of(name)
+    assert NOTICE in made_text(name)
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_own_words_are_plain_ascii(name: str) -> None:
-    assert text_of(name).isascii()
+    assert made_text(name).isascii()
 
 
 @pytest.mark.parametrize(
