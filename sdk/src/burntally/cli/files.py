@@ -9,9 +9,8 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from json import JSONDecodeError
 from pathlib import Path
-from typing import Any, Final
+from typing import Any, Final, cast
 
-from burntally.model._parse import is_object
 from burntally.model.decode import decode_builtins, parse_json
 from burntally.model.design import Design
 from burntally.model.errors import ContractError, Violation
@@ -124,19 +123,24 @@ def read_design_file(path: Path) -> DesignFile:
     """
     parsed = _parsed(path, path.read_bytes(), "")
     sources = {"": path}
-    if is_object(parsed):
-        for name in _PARTS:
-            reference = _reference(parsed.get(name))
-            if reference is not None:
-                source = _inside(path, reference, f"/{name}")
-                parsed[name] = _referred(source, f"/{name}")
-                sources[f"/{name}"] = source
+    for name in _PARTS:
+        table = _table(parsed)
+        reference = _reference(table.get(name))
+        if reference is not None:
+            source = _inside(path, reference, f"/{name}")
+            table[name] = _referred(source, f"/{name}")
+            sources[f"/{name}"] = source
     return DesignFile(design=decode_builtins(Design, parsed), sources=sources)
 
 
 def _reference(part: object) -> str | None:
-    reference = part.get(_REFERENCE) if is_object(part) and len(part) == 1 else None
+    table = _table(part)
+    reference = table.get(_REFERENCE) if len(table) == 1 else None
     return reference if isinstance(reference, str) else None
+
+
+def _table(parsed: object) -> dict[str, object]:
+    return cast("dict[str, object]", parsed) if isinstance(parsed, dict) else {}
 
 
 def _inside(path: Path, reference: str, pointer: str) -> Path:

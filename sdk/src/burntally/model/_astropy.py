@@ -2,7 +2,7 @@
 
 import re
 from functools import lru_cache
-from typing import Final
+from typing import Any, Final
 
 __all__ = ["AstropyMissingError", "factor"]
 
@@ -41,11 +41,12 @@ def factor(unit: str, x_unit: str) -> float | None:
     except ImportError as error:
         raise AstropyMissingError from error
     # The library takes 10 ms to look for names near an unknown one: too long for a body that is full of them.
-    known = units.get_current_unit_registry().registry
+    library: Any = units
+    known = library.get_current_unit_registry().registry
     if not all(word in known for word in _WORD.findall(unit)):
         raise ValueError(unit)
-    wanted = units.dimensionless_unscaled if x_unit == "1" else units.Unit(x_unit)
+    wanted = library.dimensionless_unscaled if x_unit == "1" else library.Unit(x_unit)
     try:
-        return float(units.Unit(unit).to(wanted))
+        return float(library.Unit(unit).to(wanted))
     except units.UnitConversionError:
         return None

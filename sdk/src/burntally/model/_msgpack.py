@@ -10,7 +10,7 @@ References
 import struct
 from typing import Final
 
-from burntally.model._parse import object_of
+from burntally.model._parse import is_list, is_object, object_of
 
 __all__ = ["msgpack_values"]
 
@@ -82,7 +82,7 @@ class _Reader:
 
     def _key(self) -> object:
         key = self.value()
-        return repr(key) if isinstance(key, list | dict) else key
+        return repr(key) if is_list(key) or is_object(key) else key
 
     def _count(self, first: int, headers: dict[int, str], mask: int) -> int:
         header = headers.get(first)

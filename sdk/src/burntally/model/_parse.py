@@ -7,11 +7,22 @@ import json
 import math
 from collections import Counter
 from collections.abc import Iterable, Sequence
-from typing import Final
+from typing import Final, TypeGuard
 
 from burntally.model.errors import ContractError, Violation
 
-__all__ = ["DEEPEST", "Doubled", "Unbounded", "depth_of", "json_values", "object_of", "one_violation", "too_deep"]
+__all__ = [
+    "DEEPEST",
+    "Doubled",
+    "Unbounded",
+    "depth_of",
+    "is_list",
+    "is_object",
+    "json_values",
+    "object_of",
+    "one_violation",
+    "too_deep",
+]
 
 DEEPEST: Final = 32
 """Levels of nesting that are read; a design needs ten."""
@@ -30,6 +41,16 @@ class Unbounded(float):
     """A number that no double holds, with the text that it was written as."""
 
     text: str = ""
+
+
+def is_object(value: object) -> TypeGuard[dict[object, object]]:
+    """Tell whether a plain value is an object."""
+    return isinstance(value, dict)
+
+
+def is_list(value: object) -> TypeGuard[list[object]]:
+    """Tell whether a plain value is a list."""
+    return isinstance(value, list)
 
 
 def one_violation(message: str, *, expected: str | None = None, read: str | None = None) -> ContractError:
@@ -127,7 +148,11 @@ def object_of(pairs: Sequence[tuple[object, object]]) -> dict[object, object]:
 
 def _containers(values: Iterable[object]) -> list[dict[object, object] | list[object]]:
     # Each of them once: in YAML one may stand in many places, and the ways to them double with each level.
-    return list({id(value): value for value in values if isinstance(value, dict | list)}.values())
+    found: dict[int, dict[object, object] | list[object]] = {}
+    for value in values:
+        if is_object(value) or is_list(value):
+            found[id(value)] = value
+    return list(found.values())
 
 
 def _integer(text: str) -> int | float:

@@ -8,12 +8,12 @@ unit. What it hands back are plain values again: the decoder has the last word o
 from collections.abc import Callable, Iterator, Mapping
 from contextlib import suppress
 from functools import cache
-from typing import Final
+from typing import Any, Final
 
 from msgspec import inspect
 
 from burntally.model._leaves import Reader, boolean, choice_of, count_of, number_of, text_of
-from burntally.model._parse import Doubled, Unbounded
+from burntally.model._parse import Doubled, Unbounded, is_list, is_object
 from burntally.model._trail import Report, ReportFullError, Trail, kind_of, suggestion, tell
 from burntally.model.errors import Violation
 from burntally.model.scalars import UNIT_KEY
@@ -49,7 +49,7 @@ def _reader_of(type_: object) -> Reader:
 
 def _made(info: inspect.Type, extra: Mapping[str, object]) -> Reader:
     if isinstance(info, inspect.Metadata):
-        return _made(info.type, {**extra, **(info.extra_json_schema or {})})
+        return _made(*_unwrapped(info, extra))
     if isinstance(info, inspect.FloatType):
         return number_of(info, extra)
     if isinstance(info, inspect.UnionType):
@@ -59,44 +59,47 @@ def _made(info: inspect.Type, extra: Mapping[str, object]) -> Reader:
     return _as_it_is if make is None else make(info)
 
 
+def _boolean_of(_info: inspect.BoolType) -> Reader:
+    return boolean
+
+
 def _as_it_is(value: object, _trail: Trail) -> object:
     return value
 
 
-def _struct_of(info: inspect.StructType) -> Reader:
-    cls = info.cls
-    readers = {field.encode_name: _made(field.type, {}) for field in info.fields}
-    required = tuple(field.encode_name for field in info.fields if field.required)
-    names = tuple(readers)
-    known = f"fields {', '.join(names)}"
+class _StructReader:
+    """Reads an object as a struct, field by field."""
 
-    def read_stranger(key: object, value: object, trail: Trail) -> object:
-        if key == info.tag_field:
-            if value != info.tag:
-                tell(trail, "is another kind than the one that is wanted", read=value, expected=repr(info.tag))
-        elif info.forbid_unknown_fields:
-            message = f"is not a field of {cls.__name__}{suggestion(key, names)}"
-            tell(trail, message, read=value, expected=known)
-        return value
+    def __init__(self, info: inspect.StructType) -> None:
+        self._info = info
+        self._readers = {field.encode_name: _made(field.type, {}) for field in info.fields}
+        self._required = tuple(field.encode_name for field in info.fields if field.required)
+        self._names = tuple(self._readers)
+        self._known = f"fields {', '.join(self._names)}"
 
-    def read_struct(value: object, trail: Trail) -> object:
-        if not isinstance(value, dict):
-            tell(trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=known)
+    def __call__(self, value: object, trail: Trail) -> object:
+        if not is_object(value):
+            tell(trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=self._known)
             return value
         _tell_doubled(value, trail)
-        made = {}
+        made: dict[object, object] = {}
         for key, inner in value.items():
-            reader = readers.get(key)
-            if reader is None:
-                made[key] = read_stranger(key, inner, (trail, key))
-            else:
-                made[key] = reader(inner, (trail, key))
-        for name in required:
+            reader = self._readers.get(key, self._read_stranger) if isinstance(key, str) else self._read_stranger
+            made[key] = reader(inner, (trail, key))
+        for name in self._required:
             if name not in value:
-                tell((trail, name), "is missing", expected=f"field {name} of {cls.__name__}")
+                tell((trail, name), "is missing", expected=f"field {name} of {self._info.cls.__name__}")
         return made
 
-    return read_struct
+    def _read_stranger(self, value: object, trail: Trail) -> object:
+        key = trail[1] if isinstance(trail, tuple) else None
+        if key == self._info.tag_field:
+            if value != self._info.tag:
+                tell(trail, "is another kind than is wanted", read=value, expected=repr(self._info.tag))
+        elif self._info.forbid_unknown_fields:
+            message = f"is not a field of {self._info.cls.__name__}{suggestion(key, self._names)}"
+            tell(trail, message, read=value, expected=self._known)
+        return value
 
 
 def _tell_doubled(value: dict[object, object], trail: Trail) -> None:
@@ -107,12 +110,12 @@ def _tell_doubled(value: dict[object, object], trail: Trail) -> None:
 
 def _tagged_of(infos: list[inspect.StructType]) -> Reader:
     tag_field = infos[0].tag_field or ""
-    readers = {info.tag: _struct_of(info) for info in infos}
+    readers = {info.tag: _StructReader(info) for info in infos}
     kinds = tuple(str(tag) for tag in readers)
     expected = f"one of {', '.join(kinds)}"
 
     def read_tagged(value: object, trail: Trail) -> object:
-        if not isinstance(value, dict):
+        if not is_object(value):
             wanted = f"an object with {tag_field}, {expected}"
             tell(trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=wanted)
             return value
@@ -132,39 +135,43 @@ def _tagged_of(infos: list[inspect.StructType]) -> Reader:
 
 def _list_of(info: inspect.ListType) -> Reader:
     read_item = _made(info.item_type, {})
-    least, most = info.min_length or 0, info.max_length
-    expected = f"a list of {least} to {most}" if most is not None else "a list"
+    expected = f"a list{_sizes(info)}"
 
     def read_list(value: object, trail: Trail) -> object:
-        if not isinstance(value, list | tuple):
+        if not is_list(value):
             tell(trail, f"is {kind_of(value)} where a list is wanted", read=value, expected=expected)
-            return value
-        if len(value) < least or (most is not None and len(value) > most):
+        elif not _fits(len(value), info):
             tell(trail, f"has {len(value)} entries", read=value, expected=expected)
-            return value
-        return [read_item(item, (trail, index)) for index, item in enumerate(value)]
+        else:
+            return [read_item(item, (trail, index)) for index, item in enumerate(value)]
+        return value
 
     return read_list
 
 
 def _dict_of(info: inspect.DictType) -> Reader:
     read_key, read_value = _made(info.key_type, {}), _made(info.value_type, {})
-    least, most = info.min_length or 0, info.max_length
-    expected = f"an object of {least} to {most} entries" if most is not None else "an object"
+    expected = f"an object{_sizes(info)}"
 
     def read_dict(value: object, trail: Trail) -> object:
-        if not isinstance(value, dict):
+        if not is_object(value):
             tell(trail, f"is {kind_of(value)} where an object is wanted", read=value, expected=expected)
-            return value
-        _tell_doubled(value, trail)
-        if len(value) < least or (most is not None and len(value) > most):
+        elif not _fits(len(value), info):
             tell(trail, f"has {len(value)} entries", read=value, expected=expected)
-            return value
-        for key in value:
-            read_key(key, (trail, key))
-        return {key: read_value(inner, (trail, key)) for key, inner in value.items()}
+        else:
+            _tell_doubled(value, trail)
+            return {read_key(key, (trail, key)): read_value(inner, (trail, key)) for key, inner in value.items()}
+        return value
 
     return read_dict
+
+
+def _fits(count: int, info: inspect.ListType | inspect.DictType) -> bool:
+    return count >= (info.min_length or 0) and (info.max_length is None or count <= info.max_length)
+
+
+def _sizes(info: inspect.ListType | inspect.DictType) -> str:
+    return f" of {info.min_length or 0} to {info.max_length} entries" if info.max_length is not None else ""
 
 
 def _union_of(info: inspect.UnionType, extra: Mapping[str, object]) -> Reader:
@@ -193,12 +200,13 @@ def _options_of(info: inspect.UnionType, extra: Mapping[str, object]) -> Iterato
             has_unit = isinstance(bare, inspect.FloatType) and UNIT_KEY in more
             yield (*_KINDS.get(type(bare), ()), *((str,) if has_unit else ())), _made(bare, more)
     if structs:
-        yield (dict, Doubled), _tagged_of(structs) if len(structs) > 1 else _struct_of(structs[0])
+        yield (dict, Doubled), _tagged_of(structs) if len(structs) > 1 else _StructReader(structs[0])
 
 
 def _unwrapped(info: inspect.Type, extra: Mapping[str, object]) -> tuple[inspect.Type, Mapping[str, object]]:
-    if isinstance(info, inspect.Metadata):
-        return _unwrapped(info.type, {**extra, **(info.extra_json_schema or {})})
+    while isinstance(info, inspect.Metadata):
+        typed: Any = info  # the library leaves open what the schema's extras hold
+        info, extra = info.type, {**extra, **(typed.extra_json_schema or {})}
     return info, extra
 
 
@@ -213,8 +221,8 @@ _KINDS: Final[dict[type, tuple[type, ...]]] = {
 }
 
 _MAKERS: Final[dict[type, Callable[..., Reader]]] = {
-    inspect.StructType: _struct_of,
-    inspect.BoolType: lambda _: boolean,
+    inspect.StructType: _StructReader,
+    inspect.BoolType: _boolean_of,
     inspect.IntType: count_of,
     inspect.StrType: text_of,
     inspect.LiteralType: choice_of,

@@ -199,12 +199,11 @@ def _msgpack_is_doubtful(data: bytes, value: object) -> bool:
 
 def _json_in_full(data: bytes) -> object:
     # The quick parser first: what was refused is most often a quantity with its unit.
-    try:
-        parsed = msgspec.json.decode(data)
-        is_doubtful = _json_is_doubtful(data, parsed)
-    except _REFUSALS:
-        is_doubtful = True
-    return _parse.json_values(data) if is_doubtful else parsed
+    with suppress(*_REFUSALS):
+        parsed: object = msgspec.json.decode(data)
+        if not _json_is_doubtful(data, parsed):
+            return parsed
+    return _parse.json_values(data)
 
 
 def _msgpack_in_full(data: bytes) -> object:
@@ -223,9 +222,12 @@ def _msgpack_in_full(data: bytes) -> object:
 def _tell_non_finite(value: object, trail: Trail) -> None:
     if isinstance(value, float) and value - value != 0.0:
         tell(trail, "is not a finite number", read=value)
-    elif isinstance(value, dict | list):
-        for key, inner in value.items() if isinstance(value, dict) else enumerate(value):
+    elif _parse.is_object(value):
+        for key, inner in value.items():
             _tell_non_finite(inner, (trail, key))
+    elif _parse.is_list(value):
+        for index, inner in enumerate(value):
+            _tell_non_finite(inner, (trail, index))
 
 
 # NaN and infinity are written as `null` in JSON; in MessagePack they are doubles of the highest exponent. What merely
