@@ -155,6 +155,8 @@ _ROWS: Final = (
         request=Design,
         response=Budget,
         function=_create_budget,
+        # The remedies of a design that does not close are each run again, and that takes its time.
+        cost="thread",
     ),
     Operation(
         id="compute_performance",
