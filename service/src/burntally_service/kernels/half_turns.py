@@ -201,7 +201,12 @@ def ellipse_place(mu: float, r_peri: float, r_apo: float, nu: float) -> Place:
     ratio = r_peri / r_apo
     ecc = (1.0 - ratio) / (1.0 + ratio)
     slr = 2.0 * r_peri / (1.0 + ratio)
-    r = slr / (1.0 + ecc * math.cos(nu))
+    cosine, sine = math.cos(0.5 * nu), math.sin(0.5 * nu)
+    # 1 + e cos(nu) by the half angle, which keeps its digits where the ellipse is thin and far out.
+    below = cosine * cosine + ratio * (sine * sine)
+    if not below > 0.0:
+        return _NO_PLACE
+    r = r_peri / below
     # The square root of mu over slr, taken apart since their product or ratio may not fit a double.
     speed = math.sqrt(mu) / math.sqrt(slr)
     return Place(r, speed * ecc * math.sin(nu), speed * (slr / r))
@@ -524,11 +529,13 @@ def _with_radial(burn: Burn, radial: float) -> Impulse:
 
 
 def _mean_anomaly(ratio: float, nu: float) -> float:
-    """Mean anomaly of a true one, from -pi to pi; `ratio` is that of periapsis and apoapsis, [rad]."""
-    cosine, sine = math.cos(nu), math.sin(nu)
-    ecc = (1.0 - ratio) / (1.0 + ratio)
-    # sin E = sqrt(1 - e^2) sin nu / (1 + e cos nu), where sqrt(1 - e^2) = 2 sqrt(ratio) / (1 + ratio).
-    below = 1.0 + ecc * cosine
-    sine_e = 2.0 * math.sqrt(ratio) / (1.0 + ratio) * sine / below
-    cosine_e = (ecc + cosine) / below
-    return math.atan2(sine_e, cosine_e) - ecc * sine_e
+    """Mean anomaly of a true one, from -pi to pi; `ratio` is that of periapsis and apoapsis, [rad].
+
+    tan(E / 2) = sqrt((1 - e) / (1 + e)) tan(nu / 2), and the root is that of the ratio.
+    """
+    ecc_anom = 2.0 * math.atan2(math.sqrt(ratio) * math.sin(0.5 * nu), math.cos(0.5 * nu))
+    if ecc_anom > math.pi:
+        ecc_anom -= _TWO_PI
+    elif ecc_anom < -math.pi:
+        ecc_anom += _TWO_PI
+    return ecc_anom - (1.0 - ratio) / (1.0 + ratio) * math.sin(ecc_anom)
