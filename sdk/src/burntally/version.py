@@ -1,7 +1,6 @@
 """The version of the SDK: written here, so that telling it imports nothing."""
 
-from typing import Final
-
 __all__ = ["__version__"]
 
-__version__: Final[str] = "0.1.0"
+# Without an annotation: the build reads this line, and looks for nothing between the name and the sign.
+__version__ = "0.1.0"
