@@ -300,6 +300,7 @@ def _finished(draft: _Draft) -> Lowered:
                 burners.append(rows.BurnerRow(stage, len(lit), len(lit) + len(engines)))
                 lit.extend(engines)
     riding = [_riding(draft, index, payload) for index, payload in enumerate(draft.payloads)]
+    boilers = [index for index, load in enumerate(draft.loads) if load.boiloff_per_day > 0.0]
     unplanned = rows.BranchRow(-2, 0.0, 0.0, 0)
     tables = rows.Tables(
         items=draft.items,
@@ -312,10 +313,21 @@ def _finished(draft: _Draft) -> Lowered:
         lit=lit,
         burner_of=burner_of,
         last_named=_last_named(draft),
-        boilers=[index for index, load in enumerate(draft.loads) if load.boiloff_per_day > 0.0],
+        boilers=boilers,
         branches=[draft.branch_rows.get(index, unplanned) for index in range(len(draft.branches))],
         legs=draft.legs,
         steps=draft.steps,
+        n_items=len(draft.items),
+        n_stages=len(draft.stages),
+        n_loads=len(draft.loads),
+        n_engines=len(draft.engines),
+        n_feeds=len(draft.feeds),
+        n_payloads=len(riding),
+        n_boilers=len(boilers),
+        n_branches=len(draft.branches),
+        n_legs=len(draft.legs),
+        n_rules=len(draft.rules.contingency),
+        n_steps=len(draft.steps),
     )
     return Lowered(
         tables=tables,

@@ -196,9 +196,8 @@ def _rising_share(burn: SpeedChange, slope: float) -> float:
     """
     v_f = burn.v + burn.change
     product = burn.v * v_f
+    # Never negative: the slope is at most the lesser of the two speeds, or both are zero.
     factors = (burn.v - slope) * (burn.v + slope) * (v_f - slope) * (v_f + slope)
-    if not factors >= 0.0:
-        return 0.0
     below = 2.0 * product * (product - slope * slope + math.sqrt(factors))
     if not below > 0.0:
         return 0.0

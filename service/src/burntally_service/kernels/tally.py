@@ -55,12 +55,12 @@ def tally(tables: Tables, books: Books) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> empty = Tables(*([],) * 14)
+    >>> empty = no_tables()
     >>> tally(empty, blank_books(empty, 0))
     """
     load_up(tables, books)
     index = 0
-    while index < len(tables.steps):
+    while index < tables.n_steps:
         step = tables.steps[index]
         index += 1
         op = step.op
@@ -143,7 +143,7 @@ def _contingency(tables: Tables, books: Books, leg: int) -> None:
     share = row.fraction * base
     floor = 0.0
     if row.floor_on_category:
-        place = row.branch * len(tables.legs) + row.rule
+        place = row.branch * tables.n_rules + row.rule
         books.rule_sum[place] += share
         if row.settles:
             floor = max(0.0, row.floor - books.rule_sum[place])
@@ -165,7 +165,7 @@ def _hold_reserve(tables: Tables, books: Books, leg: int) -> None:
     branch = tables.legs[leg].branch
     row = tables.branches[branch]
     amount = row.reserve_fraction * books.branch_charged[branch] + row.reserve_delta_v
-    mark = len(tables.legs) + branch
+    mark = tables.n_legs + branch
     books.reserve[branch] = amount
     if amount > 0.0:
         owed = pay(tables, books, leg, RESERVE, amount)
@@ -181,7 +181,7 @@ def _hold_reserve(tables: Tables, books: Books, leg: int) -> None:
 
 def _note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
     """Note which stage of a leg's account would pay an addition here, and how much it has (rule M)."""
-    stages = len(tables.stages)
+    stages = tables.n_stages
     row = tables.legs[leg]
     base = row.account * stages
     below = False
@@ -238,7 +238,8 @@ def _coast(tables: Tables, books: Books, leg: int, duration: float) -> None:
     """Let time pass, and boil off what boils (P6)."""
     branch = tables.legs[leg].branch
     books.branch_clock[branch] += duration
-    for load in tables.boilers:
+    for place in range(tables.n_boilers):
+        load = tables.boilers[place]
         row = tables.loads[load]
         if books.where[row.stage] != branch or books.usable[load] <= 0.0:
             continue
@@ -270,7 +271,7 @@ def _draw(tables: Tables, books: Books, leg: int, amount: float) -> None:
 
 def _speed_of_lowest(tables: Tables, books: Books, account: int) -> float:
     """Mixed exhaust speed of an account's engines on its lowest stage, attached or not; 0 without engines."""
-    stages = len(tables.stages)
+    stages = tables.n_stages
     for stage in range(stages):
         burner = tables.burner_of[account * stages + stage]
         if burner >= 0:

@@ -5,10 +5,30 @@ from typing import Final
 from burntally_service.kernels.constants import G0
 from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, NOT_FLOWN, STAMP, Books, Tables
 
-__all__ = ["DRY_FRACTION", "blank_books", "engines_flow", "load_up", "stage_mass", "wipe"]
+__all__ = ["DRY_FRACTION", "blank_books", "engines_flow", "load_up", "no_tables", "stage_mass", "wipe"]
 
 DRY_FRACTION: Final = 1e-9
 """A load below this share of what was loaded is dry (P7)."""
+
+
+def no_tables() -> Tables:
+    """Tables of nothing.
+
+    Returns
+    -------
+    Tables
+        Every row list empty, every count 0, [-].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> no_tables().n_legs
+    0
+    """
+    return Tables([], [], [], [], [], [], [], [], [], [], [], [], [], [])
 
 
 def blank_books(tables: Tables, lines: int) -> Books:
@@ -33,15 +53,15 @@ def blank_books(tables: Tables, lines: int) -> Books:
     Examples
     --------
     >>> from burntally_service.kernels.tally_rows import Tables
-    >>> blank_books(Tables(*([],) * 14), 0).lines
+    >>> blank_books(no_tables(), 0).lines
     []
     """
-    loads, engines, stages = len(tables.loads), len(tables.engines), len(tables.stages)
-    branches, legs, payloads = len(tables.branches), len(tables.legs), len(tables.payloads)
+    loads, engines, stages = tables.n_loads, tables.n_engines, tables.n_stages
+    branches, legs, payloads = tables.n_branches, tables.n_legs, tables.n_payloads
     sizes = (
         *(loads,) * 11,
         *(engines,) * 3,
-        len(tables.feeds),
+        tables.n_feeds,
         stages + payloads,
     )
     floats = [[0.0] * size for size in sizes]
@@ -66,7 +86,7 @@ def blank_books(tables: Tables, lines: int) -> Books:
         *by_branch,
         started,
         *reserves,
-        [0.0] * (branches * max(1, legs)),
+        [0.0] * (branches * tables.n_rules),
         *by_leg,
         [0] * (legs + branches),
         [0] * legs,
@@ -81,7 +101,7 @@ def blank_books(tables: Tables, lines: int) -> Books:
         [0] * marks,
         [0] * marks,
         [0.0] * (lines * LINE_WIDTH),
-        [0, 0, -1],
+        [0, 0, -1, lines],
         [0.0, 0.0],
     )
 
@@ -110,13 +130,14 @@ def load_up(tables: Tables, books: Books) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_rows import Tables
-    >>> empty = Tables(*([],) * 14)
+    >>> empty = no_tables()
     >>> load_up(empty, blank_books(empty, 0))
     """
-    stages = len(tables.stages)
-    for row in tables.items:
+    stages = tables.n_stages
+    for place in range(tables.n_items):
+        row = tables.items[place]
         books.part_mass[row.part] += row.mass * row.count * (1.0 + row.growth) * (1.0 + row.contingency)
-    for load in range(len(tables.loads)):
+    for load in range(tables.n_loads):
         content = tables.loads[load]
         residual = content.residual_fraction * content.mass
         books.residual[load] = residual
@@ -125,11 +146,11 @@ def load_up(tables: Tables, books: Books) -> None:
         books.stock[load] = content.mass
         books.dry_mark[load] = DRY_FRACTION * content.mass
     engines_flow(tables, books)
-    for payload in range(len(tables.payloads)):
+    for payload in range(tables.n_payloads):
         rider = tables.payloads[payload]
         if rider.aboard:
             books.payload_on[payload] = rider.stage
-    if len(books.branch_mass) > 0:
+    if tables.n_branches > 0:
         books.branch_started[0] = 1
         for stage in range(stages):
             books.branch_mass[0] += stage_mass(tables, books, stage)
@@ -159,10 +180,10 @@ def engines_flow(tables: Tables, books: Books) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_rows import Tables
-    >>> empty = Tables(*([],) * 14)
+    >>> empty = no_tables()
     >>> engines_flow(empty, blank_books(empty, 0))
     """
-    for engine in range(len(tables.engines)):
+    for engine in range(tables.n_engines):
         row = tables.engines[engine]
         flow = row.count * row.thrust / (row.isp * G0)
         books.engine_flow[engine] = flow
@@ -205,17 +226,19 @@ def stage_mass(tables: Tables, books: Books, stage: int) -> float:
     mass = books.part_mass[stage]
     for load in range(row.first_load, row.end_load):
         mass += books.usable[load] + books.held[load] + books.residual[load]
-    for payload in range(len(tables.payloads)):
+    for payload in range(tables.n_payloads):
         if books.payload_on[payload] == stage:
-            mass += books.part_mass[len(tables.stages) + payload]
+            mass += books.part_mass[tables.n_stages + payload]
     return mass
 
 
-def wipe(books: Books) -> None:
+def wipe(tables: Tables, books: Books) -> None:
     """Make used books blank again, in place.
 
     Parameters
     ----------
+    tables : Tables
+        What is tallied.
     books : Books
         Changed: everything but the lines, which are written over; what is to be added stays, [m/s].
 
@@ -231,41 +254,41 @@ def wipe(books: Books) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_rows import Tables
-    >>> wipe(blank_books(Tables(*([],) * 14), 0))
+    >>> wipe(no_tables(), blank_books(no_tables(), 0))
     """
-    for load in range(len(books.usable)):
+    for load in range(tables.n_loads):
         books.burned[load] = books.lost[load] = books.boiled[load] = books.handed[load] = books.taken[load] = 0.0
-    for engine in range(len(books.used)):
+    for engine in range(tables.n_engines):
         books.used[engine] = books.lit_at[engine] = 0.0
-    for part in range(len(books.part_mass)):
+    for part in range(tables.n_stages + tables.n_payloads):
         books.part_mass[part] = 0.0
-    for payload in range(len(books.payload_on)):
+    for payload in range(tables.n_payloads):
         books.payload_on[payload] = NOT_FLOWN
-    for stage in range(len(books.where)):
+    for stage in range(tables.n_stages):
         books.where[stage] = 0
         books.order[stage] = stage
         books.left_in[stage] = -1
         books.flow_of[stage] = -1
         books.unbalanced[stage] = 0
-    for place in range(len(books.rule_sum)):
+    for place in range(tables.n_branches * tables.n_rules):
         books.rule_sum[place] = 0.0
-    for branch in range(len(books.branch_mass)):
+    for branch in range(tables.n_branches):
         books.branch_mass[branch] = books.branch_clock[branch] = books.branch_charged[branch] = 0.0
         books.branch_owed[branch] = books.reserve[branch] = books.reserve_owed[branch] = 0.0
         books.branch_started[branch] = 0
-    _wipe_legs(books)
+    _wipe_legs(tables, books)
     books.count[LINES] = books.count[STAMP] = 0
 
 
-def _wipe_legs(books: Books) -> None:
+def _wipe_legs(tables: Tables, books: Books) -> None:
     """Make the entries of the legs blank again."""
-    for leg in range(len(books.required)):
+    for leg in range(tables.n_legs):
         books.required[leg] = books.by_fraction[leg] = books.by_floor[leg] = books.by_fixed[leg] = 0.0
         books.owed[leg] = 0.0
         books.handover[leg] = 0
         books.unlit[leg] = 0
         books.line_begin[leg] = -1
-    for mark in range(len(books.cause)):
+    for mark in range(tables.n_legs + tables.n_branches):
         books.cause[mark] = 0
         books.spare_stage[mark] = -1
         books.spare_more[mark] = 0

@@ -183,7 +183,7 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
     >>> pay(tables, blank_books(tables, 0), 0, MANOEUVRE, 5.0)
     5.0
     """
-    stages = len(tables.stages)
+    stages = tables.n_stages
     row = tables.legs[leg]
     branch = row.branch
     base = row.account * stages

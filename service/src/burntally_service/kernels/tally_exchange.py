@@ -51,7 +51,7 @@ def exchange(tables: Tables, books: Books, op: int, order: tuple[int, int, float
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> empty = Tables(*([],) * 14)
+    >>> empty = no_tables()
     >>> exchange(empty, blank_books(empty, 0), -1, (0, 0, 0.0))
     """
     leg, part, amount = order
@@ -82,7 +82,7 @@ def _separate(tables: Tables, books: Books, leg: int, stage: int) -> None:
         if books.left_in[stage] != leg:
             _tell(tables, books, (LINE_ABSENT, leg, stage), (0.0, 0.0))
         return
-    for position in range(len(tables.stages)):
+    for position in range(tables.n_stages):
         if books.order[position] == stage:
             detach(tables, books, leg, position)
             return
@@ -92,7 +92,7 @@ def _release(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -
     """Release a payload, or part of it; what is not there is short."""
     payload, wanted = order
     branch = tables.legs[leg].branch
-    part = len(tables.stages) + payload
+    part = tables.n_stages + payload
     stage = books.payload_on[payload]
     if stage < 0 or books.where[stage] != branch:
         _tell(tables, books, (LINE_ABSENT, leg, part), (0.0, 0.0))
@@ -126,13 +126,13 @@ def _take_payload(tables: Tables, books: Books, leg: int, payload: int) -> None:
     branch = tables.legs[leg].branch
     stage = tables.payloads[payload].stage
     if stage < 0:
-        for position in range(len(tables.stages)):
+        for position in range(tables.n_stages):
             if books.where[books.order[position]] == branch:
                 stage = books.order[position]
     if stage < 0 or books.where[stage] != branch:
         _tell(tables, books, (LINE_ABSENT, leg, max(0, stage)), (0.0, 0.0))
         return
-    kg = books.part_mass[len(tables.stages) + payload]
+    kg = books.part_mass[tables.n_stages + payload]
     _tell(tables, books, (LINE_TAKEN_PAYLOAD, leg, payload), (0.0, kg))
     books.payload_on[payload] = stage
     books.branch_mass[branch] += kg
@@ -162,7 +162,7 @@ def _take_propellant(tables: Tables, books: Books, leg: int, order: tuple[int, f
 def _dock(tables: Tables, books: Books, leg: int, docked: int) -> None:
     """Dock what is left of a finished branch on top of the stack."""
     branch = tables.legs[leg].branch
-    stages = len(tables.stages)
+    stages = tables.n_stages
     moved = 0
     for position in range(stages):
         stage = books.order[position - moved]

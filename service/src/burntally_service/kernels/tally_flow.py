@@ -1,7 +1,7 @@
 """What can burn on a stage, how fast its loads go, and the lines in which the ledger tells it."""
 
 import math
-from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, STAMP, Books, Tables
+from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, ROOM, STAMP, Books, Tables
 
 __all__ = ["can_burn", "light_flow", "spare_of", "wants_ignition", "write_line"]
 
@@ -31,7 +31,7 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> books = blank_books(Tables(*([],) * 14), 1)
+    >>> books = blank_books(no_tables(), 1)
     >>> write_line(books, (0, 0, 0), (0.0, 1.0, 2.0, 3.0, 4.0, 0.0, 0.0))
     >>> books.lines[4:8]
     [1.0, 2.0, 3.0, 4.0]
@@ -40,7 +40,7 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
     start = count[LINES] * LINE_WIDTH
     count[LINES] += 1
     lines = books.lines
-    if start + LINE_WIDTH <= len(lines):
+    if count[LINES] <= count[ROOM]:
         lines[start] = float(head[0])
         lines[start + 1] = float(head[1])
         lines[start + 2] = float(head[2])

@@ -86,6 +86,7 @@ DRY: Final = 4
 LINES: Final = 0
 STAMP: Final = 1
 ADD_AT: Final = 2
+ROOM: Final = 3
 
 NOT_FLOWN: Final = -1
 """`Books.where` of a part that has left and that no branch flies."""
@@ -201,7 +202,8 @@ class StepRow(Struct, frozen=True, gc=False):
 class Tables(Struct, frozen=True):
     """Everything that the tally reads.
 
-    `burner_of` is indexed account * stages + stage (-1: none), `last_named` branch * stages + stage and holds the last
+    The counts stand beside the rows, since a compiled record has room for more of them than there are. `burner_of` is
+    indexed account * stages + stage (-1: none), `last_named` branch * stages + stage and holds the last
     leg of the branch that names the stage as a payer (-1: none).
     """
 
@@ -219,6 +221,17 @@ class Tables(Struct, frozen=True):
     branches: Sequence[BranchRow]
     legs: Sequence[LegRow]
     steps: Sequence[StepRow]
+    n_items: int = 0
+    n_stages: int = 0
+    n_loads: int = 0
+    n_engines: int = 0
+    n_feeds: int = 0
+    n_payloads: int = 0
+    n_boilers: int = 0
+    n_branches: int = 0
+    n_legs: int = 0
+    n_rules: int = 0
+    n_steps: int = 0
 
 
 class Books(Struct, frozen=True):

@@ -83,10 +83,10 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> empty = Tables(*([],) * 14)
+    >>> empty = no_tables()
     >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], [], [-1.0]])
     """
-    legs = len(tables.legs)
+    legs = tables.n_legs
     end = books.count[LINES]
     # Legs stand in the order in which they were tallied, and so do their lines.
     for leg in range(legs - 1, -1, -1):
@@ -143,7 +143,7 @@ def _walk_event(tables: Tables, books: Books, walk: list[list[float]], start: in
     if kind == LINE_SEPARATION:
         walk[1][part] = _NONE
     elif kind == LINE_DOCKED:
-        for stage in range(len(tables.stages)):
+        for stage in range(tables.n_stages):
             walk[1][stage] = _MIXED
     elif kind == LINE_TAKEN:
         if tables.loads[part].capacity < math.inf:
@@ -163,7 +163,7 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
     spare = books.lines[start + SPARE]
     if drawer != int(walk[5][0]):
         # What another stage draws in between depends on the mass that this one has lost.
-        for stage in range(len(tables.stages)):
+        for stage in range(tables.n_stages):
             if stage != drawer and walk[1][stage] == _KNOWN:
                 walk[1][stage] = _MIXED
         walk[5][0] = float(drawer)
@@ -214,16 +214,16 @@ def owed_with(tables: Tables, scratch: Books, mark: int, added: float) -> float:
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> from burntally_service.kernels.tally_rows import BranchRow
-    >>> tables = Tables(*([],) * 11, [BranchRow(-1, 0.0, 0.0, 0)], [], [])
+    >>> tables = Tables(*([],) * 11, [BranchRow(-1, 0.0, 0.0, 0)], [], [], n_branches=1)
     >>> owed_with(tables, blank_books(tables, 0), 0, 1.0)
     0.0
     """
-    wipe(scratch)
+    wipe(tables, scratch)
     scratch.count[ADD_AT] = mark
     scratch.added[0] = added
     scratch.added[1] = 0.0
     tally(tables, scratch)
-    legs = len(tables.legs)
+    legs = tables.n_legs
     branch = tables.legs[mark].branch if mark < legs else mark - legs
     return scratch.branch_owed[branch]
 
@@ -256,7 +256,7 @@ def slack_by_search(tables: Tables, scratch: Books, mark: int) -> float:
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> from burntally_service.kernels.tally_rows import BranchRow
-    >>> tables = Tables(*([],) * 11, [BranchRow(-1, 0.0, 0.0, 0)], [], [])
+    >>> tables = Tables(*([],) * 11, [BranchRow(-1, 0.0, 0.0, 0)], [], [], n_branches=1)
     >>> slack_by_search(tables, blank_books(tables, 0), 0)
     1000000.0
     """

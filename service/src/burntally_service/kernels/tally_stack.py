@@ -65,7 +65,7 @@ def shed(tables: Tables, books: Books, leg: int, payer_position: int) -> None:
     >>> shed(tables, blank_books(tables, 0), 0, 0)
     """
     branch = tables.legs[leg].branch
-    stages = len(tables.stages)
+    stages = tables.n_stages
     highest = -1
     for position in range(payer_position):
         stage = books.order[position]
@@ -135,7 +135,7 @@ def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
 
 def _branch_of(tables: Tables, books: Books, branch: int, highest: int) -> int:
     """Start the first branch that is of a part at or below a place in the stack; -1 without one."""
-    for candidate in range(len(tables.branches)):
+    for candidate in range(tables.n_branches):
         if books.branch_started[candidate]:
             continue
         part = tables.branches[candidate].part
@@ -176,7 +176,7 @@ def cause_of(tables: Tables, books: Books, leg: int) -> int:
     >>> cause_of(tables, blank_books(tables, 0), 0) == INERT
     True
     """
-    stages = len(tables.stages)
+    stages = tables.n_stages
     base = tables.legs[leg].account * stages
     burners = 0
     aboard = 0
