@@ -19,7 +19,6 @@ from burntally import (
     Presets,
     TransferAnswer,
     TransferRequest,
-    __version__,
     connect,
     connect_async,
     errors,
@@ -30,7 +29,6 @@ def connecting() -> None:
     assert_type(connect(), Client)
     assert_type(connect("http://127.0.0.1:8463", timeout_s=5.0, tries=2, token="t"), Client)  # noqa: S106 -- invented
     assert_type(connect_async(), AsyncClient)
-    assert_type(__version__, str)
 
 
 def synchronous(client: Client, design: Design, plain: dict[str, object], raw: bytes) -> None:

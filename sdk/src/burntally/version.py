@@ -1,6 +1,8 @@
 """The version of the SDK: written here, so that telling it imports nothing."""
 
+from typing import Final
+
 __all__ = ["__version__"]
 
-# Without an annotation: the build reads this line, and looks for nothing between the name and the sign.
-__version__ = "0.1.0"
+# The build reads this very line.
+__version__: Final = "0.1.0"
