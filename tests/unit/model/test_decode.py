@@ -140,13 +140,13 @@ def test_messagepack_does_not_smuggle_non_finite_numbers_in(pointer: str, value:
     assert pointers(caught.value.violations) == [pointer]
 
 
-def float_fields(type_: Any, seen: set[Any]) -> list[tuple[str, msgspec.inspect.FloatType]]:
-    """Every float of a type and of all that it holds, with the name of the struct that holds it."""
-    found: list[tuple[str, msgspec.inspect.FloatType]] = []
+def parts_of(type_: type) -> list[tuple[str, msgspec.inspect.Type]]:
+    """Every type that a request holds, with the field that holds it."""
+    found: list[tuple[str, msgspec.inspect.Type]] = []
+    seen: set[type] = set()
 
     def look(info: msgspec.inspect.Type, where: str) -> None:
-        if isinstance(info, msgspec.inspect.FloatType):
-            found.append((where, info))
+        found.append((where, info))
         if isinstance(info, msgspec.inspect.StructType) and info.cls not in seen:
             seen.add(info.cls)
             for field in info.fields:
@@ -165,10 +165,24 @@ def float_fields(type_: Any, seen: set[Any]) -> list[tuple[str, msgspec.inspect.
 def test_every_number_of_a_request_has_both_bounds(type_: type) -> None:
     open_ended = [
         where
-        for where, info in float_fields(type_, set())
-        if (info.ge is None and info.gt is None) or (info.le is None and info.lt is None)
+        for where, info in parts_of(type_)
+        if isinstance(info, msgspec.inspect.FloatType)
+        and ((info.ge is None and info.gt is None) or (info.le is None and info.lt is None))
     ]
     assert open_ended == []
+
+
+@pytest.mark.parametrize("type_", [Design, PerformanceRequest, TransferRequest])
+def test_every_struct_of_a_request_leaves_defaults_out_when_it_is_written(type_: type) -> None:
+    # The quick look for doubled keys counts on it: what is written again holds no key that was not read.
+    structs = {info.cls for _, info in parts_of(type_) if isinstance(info, msgspec.inspect.StructType)}
+    assert [struct.__name__ for struct in structs if not struct.__struct_config__.omit_defaults] == []
+
+
+def test_defaults_that_are_structs_or_lists_are_left_out_too() -> None:
+    bare = {"name": "tug", "stages": [{"name": "tug", "dry_mass": 1.0}]}
+    body = json.dumps({"vehicle": bare}).encode()
+    assert msgspec.json.decode(encode(decode(PerformanceRequest, body))) == {"vehicle": bare}
 
 
 @pytest.mark.parametrize(
