@@ -136,8 +136,8 @@ class StatusError(ClientError):
     ) -> None:
         super().__init__(message, request=request)
         self.status = status
-        self.problem_code = problem_code or self.code
-        self.violations = tuple(violations)
+        self.problem_code: str = problem_code or self.code
+        self.violations: tuple[Violation, ...] = tuple(violations)
         self.response = response
         self.request_id = request_id
 

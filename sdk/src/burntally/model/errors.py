@@ -35,7 +35,7 @@ class BurntallyError(Exception):
 class _ViolationsError(BurntallyError, ValueError):
     def __init__(self, violations: Sequence[Violation]) -> None:
         super().__init__("; ".join(f"{v.pointer or '/'}: {v.message}" for v in violations))
-        self.violations = tuple(violations)
+        self.violations: tuple[Violation, ...] = tuple(violations)
 
 
 class ContractError(_ViolationsError):
