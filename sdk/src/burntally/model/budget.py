@@ -245,12 +245,15 @@ class Delivery(Struct, frozen=True, kw_only=True, omit_defaults=True):
     epoch: Annotated[str | None, doc("When, UTC.")] = None
 
 
+_Value = float | int | str | bool | list[str]
+
+
 class Remedy(Struct, frozen=True, kw_only=True, omit_defaults=True, rename={"from_": "from"}):
     """A change of one field that mends a finding; it was run again with the change in place."""
 
     pointer: Annotated[str, doc("Field to change.")]
-    from_: Annotated[float | int | str | bool | list[str] | None, doc("Its value now; absent: not written in the design.")] = None
-    to: Annotated[float | int | str | bool | list[str] | None, doc("The value that mends it; absent: the field goes.")] = None
+    from_: Annotated[_Value | None, doc("Its value now; absent: not written in the design.")] = None
+    to: Annotated[_Value | None, doc("The value that mends it; absent: the field goes.")] = None
     margin: Annotated[Number | None, doc("Margin of the budget with the change [m/s].")] = None
     message: Annotated[str, doc("The change in words.")]
 

@@ -163,9 +163,7 @@ class Transfer(ChargedLeg, frozen=True, kw_only=True, forbid_unknown_fields=True
     periapsis_min: Annotated[Altitude | None, doc("The lowest that a path of the leg may pass.")] = None
 
 
-class Rendezvous(
-    ChargedLeg, frozen=True, kw_only=True, forbid_unknown_fields=True, tag_field="kind", tag="rendezvous"
-):
+class Rendezvous(ChargedLeg, frozen=True, kw_only=True, forbid_unknown_fields=True, tag_field="kind", tag="rendezvous"):
     """To a target in orbit."""
 
     default_category: ClassVar[str] = "deterministic"

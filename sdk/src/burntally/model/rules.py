@@ -56,13 +56,13 @@ class Limits(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True, omit
     """What a budget must keep to; ``null`` lifts a preset's limit."""
 
     liftoff_thrust_to_weight_min: Annotated[
-        Ratio | None | UnsetType, doc("Least thrust-to-weight at lift-off, in local gravity.")
+        Ratio | UnsetType | None, doc("Least thrust-to-weight at lift-off, in local gravity.")
     ] = UNSET
-    acceleration_max: Annotated[Acceleration | None | UnsetType, doc("Greatest acceleration at any burn-out.")] = UNSET
-    burn_time_max: Annotated[Duration | None | UnsetType, doc("Longest single burn.")] = UNSET
-    duration_max: Annotated[Duration | None | UnsetType, doc("Longest a branch may take.")] = UNSET
-    periapsis_min: Annotated[Altitude | None | UnsetType, doc("Lowest periapsis, deorbits and landings apart.")] = UNSET
-    fill_max: Annotated[LoadRatio | None | UnsetType, doc("Greatest load over capacity.")] = UNSET
+    acceleration_max: Annotated[Acceleration | UnsetType | None, doc("Greatest acceleration at any burn-out.")] = UNSET
+    burn_time_max: Annotated[Duration | UnsetType | None, doc("Longest single burn.")] = UNSET
+    duration_max: Annotated[Duration | UnsetType | None, doc("Longest a branch may take.")] = UNSET
+    periapsis_min: Annotated[Altitude | UnsetType | None, doc("Lowest periapsis, deorbits and landings apart.")] = UNSET
+    fill_max: Annotated[LoadRatio | UnsetType | None, doc("Greatest load over capacity.")] = UNSET
 
 
 class Rules(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):

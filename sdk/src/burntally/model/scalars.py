@@ -79,9 +79,7 @@ Number = Annotated[float, Meta(ge=-1e300, le=1e300)]
 
 Name = Annotated[str, Meta(min_length=1, max_length=64, pattern=r"^[A-Za-z0-9 _.\-]+$")]
 Text = Annotated[str, Meta(max_length=500)]
-CategoryPath = Annotated[
-    str, Meta(min_length=1, max_length=200, pattern=r"^[A-Za-z0-9_\-]+(\.[A-Za-z0-9_\-]+)*$")
-]
+CategoryPath = Annotated[str, Meta(min_length=1, max_length=200, pattern=r"^[A-Za-z0-9_\-]+(\.[A-Za-z0-9_\-]+)*$")]
 Pointer = Annotated[str, Meta(max_length=2000, pattern=r"^(/[^/]*)*$")]
 Epoch = Annotated[
     str,

@@ -77,13 +77,9 @@ class Stage(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True, omit_
 
     name: Annotated[Name, doc("Name, unique among stages and payloads; `main` is taken.")]
     dry_mass: Annotated[MassList, doc("Inert mass: structure, engines, trapped gas; not residual propellant.")]
-    propellants: Annotated[
-        list[Load], Meta(max_length=8), doc("Loads; none: an inert stage, which never pays.")
-    ] = []
+    propellants: Annotated[list[Load], Meta(max_length=8), doc("Loads; none: an inert stage, which never pays.")] = []
     engines: Annotated[list[Engine], Meta(max_length=16), doc("Kinds of engine.")] = []
-    mass_growth: Annotated[
-        Growth | None, doc("Growth of items that nothing else covers; absent: the rules'.")
-    ] = None
+    mass_growth: Annotated[Growth | None, doc("Growth of items that nothing else covers; absent: the rules'.")] = None
     separation: Annotated[
         Literal["when_spent", "by_leg"],
         doc("Whether a spent stage drops before the next payer's burn, or only where a leg says so."),

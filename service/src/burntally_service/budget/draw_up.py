@@ -109,7 +109,7 @@ def _leg_cautions(drawn: Drawn) -> Iterator[Caution]:
     if computed:
         yield Caution(code="two-body", message="Computed manoeuvres are impulsive, about one point-mass body.")
     if computed and drawn.rules.finite_burn:
-        message = "Losses of finite burns are not estimated; set rules.finite_burn to false to say that none are wanted."
+        message = "Losses of finite burns are not estimated; rules.finite_burn = false says that none are wanted."
         yield Caution(code="finite-burn-not-estimated", message=message)
 
 
@@ -130,5 +130,3 @@ def _provenance(design: Design) -> Provenance:
         preset_digest=None if preset is None else preset_digest(preset),
         tables=[TableUsed(name="bodies", digest=table_digest())],
     )
-
-

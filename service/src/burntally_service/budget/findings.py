@@ -42,8 +42,10 @@ def findings_of(drawn: Drawn) -> list[Finding]:
         *_rules(drawn),
     ]
     order = {"error": 0, "warning": 1, "note": 2}
-    unique = {_identity(finding): finding for finding in reversed(found)}
-    return sorted(reversed(unique.values()), key=lambda finding: order[finding.severity])
+    unique: dict[tuple[str, str | None, int | None, str], Finding] = {}
+    for finding in found:
+        unique.setdefault(_identity(finding), finding)
+    return sorted(unique.values(), key=lambda finding: order[finding.severity])
 
 
 def _identity(finding: Finding) -> tuple[str, str | None, int | None, str]:
@@ -122,7 +124,8 @@ def _unpaid_leg(drawn: Drawn, leg: int, row: PlannedLeg) -> Finding:
         engine = _exhausted_engine(drawn, drawn.lowered.tables.legs[leg].account)
         stage, place = drawn.lowered.engines[engine]
         code, pointer = "ignitions-exceeded", f"{stage_pointer(stage)}/engines/{place}"
-        message = f"{owed:.1f} m/s are owed: {drawn.engine_name(engine)} of {drawn.part_name(stage)} has no ignition left"
+        lacking = f"{drawn.engine_name(engine)} of {drawn.part_name(stage)}"
+        message = f"{owed:.1f} m/s are owed: {lacking} has no ignition left"
     elif named:
         code, told = {
             rows.GONE: ("payer-gone", "has separated before"),
@@ -165,7 +168,7 @@ def _not_started(drawn: Drawn) -> Iterator[Finding]:
             yield Finding(
                 code="branch-not-started",
                 severity="error",
-                message=f"{branch.of} never starts a branch of its own: it stays, or it leaves with a part that has one",
+                message=f"{branch.of} starts no branch of its own: it stays, or leaves with a part that has one",
                 pointer=f"/mission/branches/{index}/of",
                 branch=branch.of,
                 remedies=[],
@@ -273,7 +276,7 @@ def _ledger_notes(drawn: Drawn) -> Iterator[Finding]:
         legs = drawn.legs_of(branch)
         for leg, row in legs:
             if books.handover[leg]:
-                message = f"{drawn.part_name(books.handover[leg] - 1)} runs dry within the leg, and another stage goes on"
+                message = f"{drawn.part_name(books.handover[leg] - 1)} cannot go on, and another stage does"
                 yield _note("handover", message, row, plan.name)
             if books.unlit[leg]:
                 yield _note("unlit-aboard", "a stage is carried while one above it burns", row, plan.name)
@@ -337,11 +340,15 @@ def _rules(drawn: Drawn) -> Iterator[Finding]:
                 seen.add(row.category)
                 message = f"no rule adds contingency to the category {row.category}"
                 yield _note("no-contingency", message, row, _branch_name(drawn, branch))
-    parts = [
-        *((f"{stage_pointer(index)}/dry_mass", stage.dry_mass, stage.mass_growth) for index, stage in enumerate(drawn.lowered.stages)),
-        *((f"/vehicle/payloads/{index}/mass", payload.mass, None) for index, payload in enumerate(drawn.design.vehicle.payloads)),
+    vehicle = drawn.design.vehicle
+    stages = [
+        (f"{stage_pointer(index)}/dry_mass", stage.dry_mass, stage.mass_growth)
+        for index, stage in enumerate(vehicle.stages)
     ]
-    for pointer, masses, fallback in parts:
+    payloads = [
+        (f"/vehicle/payloads/{index}/mass", payload.mass, None) for index, payload in enumerate(vehicle.payloads)
+    ]
+    for pointer, masses, fallback in [*stages, *payloads]:
         if has_uncovered_item(masses, drawn.rules, fallback=fallback):
             yield Finding(
                 code="no-growth",

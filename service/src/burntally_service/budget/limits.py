@@ -182,5 +182,3 @@ def overfilled(drawn: Drawn) -> Iterator[Finding]:
                 unit="kg",
                 remedies=[],
             )
-
-

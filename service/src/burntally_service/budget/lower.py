@@ -71,8 +71,13 @@ def lower(vehicle: Vehicle, rules: Rules, branches: Sequence[BranchPlan | None])
     Lowered
         The tables and the names of their rows.
     """
-    taken = [row.leg.payload for plan in branches if plan for row in plan.legs if _takes_payload(row)]
-    draft = _Draft(vehicle, rules, [*vehicle.payloads, *(payload for payload in taken if payload)], branches)
+    taken = [
+        row.leg.payload
+        for plan in branches
+        for row in (plan.legs if plan else ())
+        if isinstance(row.leg, TakeOn) and row.leg.payload is not None
+    ]
+    draft = _Draft(vehicle, rules, [*vehicle.payloads, *taken], branches)
     draft.stage_index = {stage.name: index for index, stage in enumerate(vehicle.stages)}
     for index, stage in enumerate(vehicle.stages):
         _lower_stage(draft, index, stage)
@@ -82,10 +87,6 @@ def lower(vehicle: Vehicle, rules: Rules, branches: Sequence[BranchPlan | None])
     for branch in range(1, len(branches)):
         _emit_branch(draft, branch)
     return _finished(draft)
-
-
-def _takes_payload(row: PlannedLeg) -> bool:
-    return isinstance(row.leg, TakeOn) and row.leg.payload is not None
 
 
 def _lower_items(draft: _Draft, part: int, masses: MassList, growth: tuple[float | None, float]) -> None:

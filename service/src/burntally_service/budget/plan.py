@@ -6,8 +6,8 @@ from dataclasses import dataclass
 from burntally.model.design import Design
 from burntally.model.mission import Ascend, Branch, ChargedLeg, Coast, Leg, Location
 from burntally.model.rules import Contingency, Reserve, Rules
-from burntally_service.budget.rules import no_rule, rule_for
 from burntally_service.bodies import Body
+from burntally_service.budget.rules import no_rule, rule_for
 from burntally_service.legs.plan import plan_leg
 from burntally_service.legs.planned import Clock, LegPlan
 

@@ -1,9 +1,10 @@
 """Rules with their preset filled in, and which rule a leg takes."""
 
+from msgspec import UNSET, structs
+
 from burntally.model.errors import UncomputableError, Violation
 from burntally.model.rules import Contingency, Limits, Rules
 from burntally_service.budget.presets import preset_rules
-from msgspec import UNSET, structs
 
 __all__ = ["resolve", "rule_for"]
 

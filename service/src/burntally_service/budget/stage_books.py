@@ -2,7 +2,7 @@
 
 from msgspec import structs
 
-from burntally.model.budget import DeltaVBook, Delivery, LoadBook, Separated, StageBook
+from burntally.model.budget import Delivery, DeltaVBook, LoadBook, Separated, StageBook
 from burntally_service.budget.drawing import Drawn, Line
 from burntally_service.kernels import tally_rows as rows
 from burntally_service.kernels.tally_books import blank_books, load_up, stage_mass

@@ -10,7 +10,7 @@ from __future__ import annotations
 import functools
 from typing import TYPE_CHECKING, Any, Final, get_args, get_type_hints
 
-from burntally_service.kernels.tally_rows import LINE_WIDTH, NOT_FLOWN, Books, Tables
+from burntally_service.kernels.tally_rows import BLANK, LINE_WIDTH, Books, Tables
 
 if TYPE_CHECKING:
     import numpy as np
@@ -128,10 +128,9 @@ def books_record(tables: Tables, lines: int = 0) -> NDArray[np.void]:
 
     record = np.zeros(1, dtype=_books_layout(room_of(tables), lines))
     books = record[0]
-    books["payload_on"] = NOT_FLOWN
+    for name, (_, entry) in BLANK.items():
+        books[name] = entry
     books["order"] = np.arange(len(books["order"]))
-    for name in ("left_in", "flow_of", "line_begin", "spare_stage"):
-        books[name] = -1
     books["count"][2] = -1
     books["count"][3] = lines
     return record

@@ -196,8 +196,10 @@ def _rising_share(burn: SpeedChange, slope: float) -> float:
     """
     v_f = burn.v + burn.change
     product = burn.v * v_f
-    # Never negative: the slope is at most the lesser of the two speeds, or both are zero.
     factors = (burn.v - slope) * (burn.v + slope) * (v_f - slope) * (v_f + slope)
+    # Negative for speeds that no burn has; the root would raise.
+    if not factors >= 0.0:
+        return 0.0
     below = 2.0 * product * (product - slope * slope + math.sqrt(factors))
     if not below > 0.0:
         return 0.0

@@ -209,7 +209,7 @@ def _note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
         books.spare_mass[mark] = books.branch_mass[row.branch]
         books.spare_stage[mark] = stage
         books.spare_mask[mark] = mask
-        if below or _burns_on(tables, books, burner, first_dry):
+        if below or _burns_on(tables, burner, first_dry):
             books.spare_more[mark] = 1
 
 
@@ -219,7 +219,7 @@ def _can_pay(tables: Tables, books: Books, burner: int) -> bool:
     return mask != 0
 
 
-def _burns_on(tables: Tables, books: Books, burner: int, dry: int) -> bool:
+def _burns_on(tables: Tables, burner: int, dry: int) -> bool:
     """Tell whether some engine of a burner goes on when one load is dry."""
     row = tables.burners[burner]
     if row.end_lit - row.first_lit == 1:

@@ -1,9 +1,9 @@
 """Opening the books: what is aboard before the first step."""
 
-from typing import Final
+from typing import Any, Final
 
 from burntally_service.kernels.constants import G0
-from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, NOT_FLOWN, STAMP, Books, Tables
+from burntally_service.kernels.tally_rows import BLANK, LINE_WIDTH, LINES, NOT_FLOWN, STAMP, Books, Tables
 
 __all__ = ["DRY_FRACTION", "blank_books", "engines_flow", "load_up", "no_tables", "stage_mass", "wipe"]
 
@@ -56,54 +56,25 @@ def blank_books(tables: Tables, lines: int) -> Books:
     >>> blank_books(no_tables(), 0).lines
     []
     """
-    loads, engines, stages = tables.n_loads, tables.n_engines, tables.n_stages
-    branches, legs, payloads = tables.n_branches, tables.n_legs, tables.n_payloads
-    sizes = (
-        *(loads,) * 11,
-        *(engines,) * 3,
-        tables.n_feeds,
-        stages + payloads,
-    )
-    floats = [[0.0] * size for size in sizes]
-    by_branch = [[0.0] * branches for _ in range(4)]
-    started = [0] * branches
-    reserves = [[0.0] * branches for _ in range(2)]
-    by_leg = [[0.0] * legs for _ in range(5)]
-    after = [[0.0] * legs for _ in range(4)]
-    marks = legs + branches
-    return Books(
-        *floats,
-        [NOT_FLOWN] * payloads,
-        [0] * stages,
-        list(range(stages)),
-        [-1] * stages,
-        [-1] * stages,
-        [0.0] * stages,
-        [0.0] * stages,
-        [0] * stages,
-        [0] * stages,
-        [0.0] * stages,
-        *by_branch,
-        started,
-        *reserves,
-        [0.0] * (branches * tables.n_rules),
-        *by_leg,
-        [0] * (legs + branches),
-        [0] * legs,
-        [0] * legs,
-        *after,
-        [-1] * legs,
-        [0] * legs,
-        [0.0] * marks,
-        [0.0] * marks,
-        [0.0] * marks,
-        [-1] * marks,
-        [0] * marks,
-        [0] * marks,
-        [0.0] * (lines * LINE_WIDTH),
-        [0, 0, -1, lines],
-        [0.0, 0.0],
-    )
+    sizes = {
+        "loads": tables.n_loads,
+        "engines": tables.n_engines,
+        "feeds": tables.n_feeds,
+        "parts": tables.n_stages + tables.n_payloads,
+        "payloads": tables.n_payloads,
+        "stages": tables.n_stages,
+        "branches": tables.n_branches,
+        "rules": tables.n_branches * tables.n_rules,
+        "legs": tables.n_legs,
+        "marks": tables.n_legs + tables.n_branches,
+        "lines": lines * LINE_WIDTH,
+        "count": 4,
+        "added": 2,
+    }
+    lists: dict[str, Any] = {name: [entry] * sizes[of] for name, (of, entry) in BLANK.items()}
+    lists["order"] = list(range(tables.n_stages))
+    lists["count"] = [0, 0, -1, lines]
+    return Books(**lists)
 
 
 def load_up(tables: Tables, books: Books) -> None:

@@ -42,14 +42,15 @@ def _draw_down(tables: Tables, books: Books, stage: int, time: float) -> None:
             kg = rate * time
             left = usable[load] - kg
             # Rounding may ask for a trifle more than there is.
-            usable[load] = left if left > 0.0 else 0.0
+            left = max(left, 0.0)
+            usable[load] = left
             burned[load] += kg
             if left <= books.dry_mark[load]:
                 books.flow_of[stage] = -1
 
 
 def _ignite(tables: Tables, books: Books, leg: int, burner: int, mask: int) -> None:
-    """Light what can burn of a burner, then take the losses: an engine that they leave dry has been lit all the same."""
+    """Light what can burn of a burner, then take the losses; an engine that they leave dry has been lit."""
     row = tables.burners[burner]
     branch = tables.legs[leg].branch
     first = tables.stages[row.stage].first_engine
@@ -86,7 +87,8 @@ def _lose(tables: Tables, books: Books, engine: int, stage: int) -> float:
         load = tables.feeds[feed].load
         kg = books.feed_flow[feed] * time
         left = books.usable[load] - kg
-        books.usable[load] = left if left > 0.0 else 0.0
+        left = max(left, 0.0)
+        books.usable[load] = left
         books.lost[load] += kg
         lost += kg
         if left <= books.dry_mark[load]:
@@ -95,7 +97,7 @@ def _lose(tables: Tables, books: Books, engine: int, stage: int) -> float:
 
 
 def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int, float]) -> float:
-    """Burn one stage for a delta-v or for kilograms until it is paid or the stage is dry; return what is left to pay."""
+    """Burn one stage until a delta-v, or kilograms, are paid or it is dry; return what is left to pay."""
     purpose, amount = order
     branch = tables.legs[leg].branch
     stage = tables.burners[burner].stage
@@ -208,22 +210,35 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
             lowest = stage
             continue
         if lowest >= 0:
-            if purpose != KILOGRAMS:
-                shed(tables, books, leg, position)
-            if books.where[lowest] == branch:
-                books.unlit[leg] = 1
+            _leave_below(tables, books, leg, (purpose, position, lowest))
         if purpose == MANOEUVRE:
             _ignite(tables, books, leg, burner, mask)
         before = left
         left = _burn(tables, books, leg, burner, (purpose, left))
         if left < before:
-            if passed >= 0 and purpose <= CONTINGENCY and not row.quiet:
-                books.handover[leg] = passed + 1
+            if passed >= 0:
+                _mark_handover(tables, books, leg, (purpose, passed))
             passed = stage
         lowest = stage
         if left < tolerance:
             return 0.0
     return left
+
+
+def _leave_below(tables: Tables, books: Books, leg: int, at: tuple[int, int, int]) -> None:
+    """Separate what is spent below a payer, and mark that something is carried unlit if anything stays."""
+    purpose, position, lowest = at
+    if purpose != KILOGRAMS:
+        shed(tables, books, leg, position)
+    if books.where[lowest] == tables.legs[leg].branch:
+        books.unlit[leg] = 1
+
+
+def _mark_handover(tables: Tables, books: Books, leg: int, passed: tuple[int, int]) -> None:
+    """Mark that another stage goes on for one that ran dry, where that is worth telling."""
+    purpose, stage = passed
+    if purpose <= CONTINGENCY and not tables.legs[leg].quiet:
+        books.handover[leg] = stage + 1
 
 
 def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
@@ -270,7 +285,8 @@ def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
         row = tables.stages[stage]
         for load in range(row.first_load, row.end_load):
             left = books.usable[load] - books.flow[load] * time
-            books.usable[load] = left if left > 0.0 else 0.0
+            left = max(left, 0.0)
+            books.usable[load] = left
         books.usable[first_dry] = 0.0
         books.flow_of[stage] = -1
         thrust, mdot, _ = light_flow(tables, books, burner)

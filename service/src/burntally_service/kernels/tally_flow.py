@@ -1,6 +1,7 @@
 """What can burn on a stage, how fast its loads go, and the lines in which the ledger tells it."""
 
 import math
+
 from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, ROOM, STAMP, Books, Tables
 
 __all__ = ["can_burn", "light_flow", "spare_of", "wants_ignition", "write_line"]
