@@ -11,7 +11,7 @@ from typing import Any
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import given
 from hypothesis import strategies as st
 
 import burntally_service.kernels as room
@@ -72,7 +72,6 @@ def test_gears_give_the_same_bits(kernel: Callable[..., Any]) -> None:
     kinds = [typing.get_type_hints(kernel)[name] for name in inspect.signature(kernel).parameters]
     twin = compiled(kernel)
 
-    @settings(max_examples=200)
     @given(st.one_of(*(st.tuples(*(drawn(kind, doubles) for kind in kinds)) for doubles in (WILD, TAME))))
     def check(arguments: tuple[Any, ...]) -> None:
         sent = [packed(kind, value) for kind, value in zip(kinds, arguments, strict=True)]

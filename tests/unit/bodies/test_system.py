@@ -84,6 +84,13 @@ def test_bodies_must_not_move_about_each_other() -> None:
     ]
 
 
+def test_a_moon_of_bodies_that_move_about_each_other_is_not_at_fault() -> None:
+    assert pointers(body("tessaly"), body("orrin", "ebb"), body("ebb", "orrin"), body("flow", "ebb")) == [
+        "/mission/system/bodies/1/parent",
+        "/mission/system/bodies/2/parent",
+    ]
+
+
 def test_a_body_must_not_move_about_itself() -> None:
     assert pointers(body("tessaly"), body("orrin", "orrin")) == ["/mission/system/bodies/1/parent"]
 

@@ -101,6 +101,13 @@ def test_without_a_wish_the_users_cache_serves(
 
 
 @pytest.mark.usefixtures("fresh_cache")
+def test_without_a_home_nothing_is_kept(monkeypatch: pytest.MonkeyPatch) -> None:
+    for name in ("NUMBA_CACHE_DIR", "XDG_CACHE_HOME", "HOME"):
+        monkeypatch.delenv(name, raising=False)
+    assert cache_directory() is None
+
+
+@pytest.mark.usefixtures("fresh_cache")
 def test_where_nothing_can_be_written_nothing_is_kept(monkeypatch: pytest.MonkeyPatch, tmp_path: Path) -> None:
     (tmp_path / "file").touch()
     monkeypatch.setenv("NUMBA_CACHE_DIR", str(tmp_path / "file"))

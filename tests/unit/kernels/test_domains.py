@@ -210,10 +210,18 @@ def test_a_poor_stage_under_a_good_one_is_left_out() -> None:
     assert staging.optimal_mass_ratio(speeds[0], coefficients[0], p) == 1.0
 
 
-def test_a_third_of_the_turn_goes_where_it_is_slow() -> None:
+def test_the_slower_a_burn_the_more_it_turns() -> None:
     fast, slow = SpeedChange(7800.0, 2400.0), SpeedChange(1600.0, 1500.0)
     split = plane_split.optimal_split(fast, SpeedChange(300.0, 10.0), slow, 0.5)
     assert split.second > split.third > split.first
+
+
+@pytest.mark.parametrize("slow", [0, 1, 2])
+def test_a_great_turn_goes_where_it_is_slow(slow: int) -> None:
+    burns = [SpeedChange(7800.0, 2400.0)] * 3
+    burns[slow] = SpeedChange(100.0, 30.0)
+    split = plane_split.optimal_split(burns[0], burns[1], burns[2], 2.5)
+    assert split[slow] > 2.4
 
 
 def test_a_burn_that_does_not_exist_turns_nothing() -> None:
