@@ -24,6 +24,11 @@ def leaves(value: Any, pointer: str = "") -> Iterator[tuple[str, Any]]:
         yield pointer, value
 
 
+def is_stable(pointer: str) -> bool:
+    """Tell what the contract promises to keep: codes are stable, words are not."""
+    return not pointer.endswith("/message")
+
+
 def is_same(was: Any, is_now: Any) -> bool:
     # Another processor's library may round the last digit otherwise.
     numbers = isinstance(was, float) and isinstance(is_now, float)
@@ -35,7 +40,8 @@ def test_the_recorded_answer_still_holds(operation_id: str) -> None:
     recorded = dict(leaves(answer_of(operation_id)["answer"]["value"]))
     told = dict(leaves(msgspec.json.decode(answer(operation_id, example_bytes(operation_id)))))
     assert recorded.keys() == told.keys()
-    assert [pointer for pointer in told if not is_same(recorded[pointer], told[pointer])] == []
+    changed = [pointer for pointer in told if not is_same(recorded[pointer], told[pointer])]
+    assert list(filter(is_stable, changed)) == []
 
 
 @pytest.mark.parametrize("operation_id,name", REQUESTS)

@@ -1,7 +1,7 @@
 """The application: the one place where settings, operations, pages and problems are put together."""
 
 import asyncio
-from collections.abc import AsyncIterator
+from collections.abc import AsyncGenerator
 from contextlib import asynccontextmanager
 
 from litestar import Litestar
@@ -46,7 +46,7 @@ def create_app(settings: Settings | None = None) -> Edge:
 
 
 @asynccontextmanager
-async def _ready(application: Litestar) -> AsyncIterator[None]:
+async def _ready(application: Litestar) -> AsyncGenerator[None, None]:
     """Answer one budget before calling the service ready, so that the first caller waits for no import."""
     await asyncio.to_thread(operations.answer, "create_budget", example_bytes("create_budget"))
     application.state.ready = True

@@ -2,7 +2,7 @@
 
 import re
 import secrets
-from typing import Final
+from typing import Any, Final
 
 from litestar.enums import ScopeType
 from litestar.response.base import ASGIResponse
@@ -35,7 +35,9 @@ class Edge:
             await self.app(scope, receive, send)
             return
         request_id = _request_id(scope)
-        scope.setdefault("state", {})["request_id"] = request_id
+        # The type says that servers always make this mapping; the ASGI standard does not.
+        mapping: Any = scope
+        mapping.setdefault("state", {})["request_id"] = request_id
         reply = _Reply(send, request_id=request_id, is_head=scope["method"] == "HEAD")
         if not _is_canonical(scope["path"]):
             await _refuse(refusal_of(NotFoundError(()), request_id), scope, receive, reply)

@@ -181,7 +181,7 @@ def _response_name(kinds: tuple[ProblemType, ...]) -> str:
 
 
 def _problem(kinds: tuple[ProblemType, ...]) -> Node:
-    examples = {
+    examples: Node = {
         kind.code: {
             "summary": kind.title,
             "value": {

@@ -86,7 +86,7 @@ def _walk(schema: Schema, change: Callable[[Schema], Schema]) -> Schema:
             rebuilt[key] = {name: _walk(inner, change) for name, inner in value.items()}
         elif key == "anyOf":
             rebuilt[key] = [_walk(inner, change) for inner in value]
-        elif key in _HOLDING_ONE and isinstance(value, dict):
+        elif key in _HOLDING_ONE and value is not False:
             rebuilt[key] = _walk(value, change)
         else:
             rebuilt[key] = _tidy(value)
