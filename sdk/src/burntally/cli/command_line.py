@@ -1,7 +1,6 @@
 """The command line: what was typed, parsed and sent to its command, and how it ended as an exit code."""
 
 import sys
-import traceback
 from argparse import ArgumentParser, Namespace
 from collections.abc import Sequence
 from io import TextIOWrapper
@@ -82,6 +81,8 @@ def _run(arguments: Namespace) -> ExitCode:
         # A server that cannot start leaves this way; its own codes mean other things than ours.
         return ExitCode.INTERNAL if stop.code else ExitCode.CLOSES
     except Exception:  # noqa: BLE001 -- an uncaught exception would end in 1, which says "does not close"
+        import traceback  # a failure may take its time; --version may not
+
         traceback.print_exc()
         return ExitCode.INTERNAL
     return code
