@@ -4,17 +4,8 @@ import math
 
 import pytest
 
-from burntally_service.kernels.half_turns import (
-    Place,
-    apse_turn,
-    apsis_place,
-    coasting_time,
-    ellipse_place,
-    half_turn,
-    half_turn_arc,
-    two_half_turns,
-    widest_half_turn,
-)
+from burntally_service.kernels.ellipses import Place, apse_turn, apsis_place, coasting_time, ellipse_place
+from burntally_service.kernels.half_turns import half_turn, half_turn_arc, two_half_turns, widest_half_turn
 from burntally_service.kernels.manoeuvres import Apsis
 from burntally_service.kernels.orbits import orbital_speed, period
 from burntally_service.kernels.transfers import apsis_transfer, bielliptic

@@ -66,8 +66,8 @@ def crossing(inc_i: float, raan_i: float, inc_f: float, raan_f: float) -> Crossi
     Examples
     --------
     >>> turn = crossing(math.radians(55.0), 0.0, math.radians(40.0), math.radians(45.0))
-    >>> round(math.degrees(turn.angle), 3)
-    35.745
+    >>> round(2.0 * 5892.311 * math.sin(0.5 * turn.angle), 3)
+    3615.925
     """
     gap = raan_f - raan_i
     if not (0.0 <= inc_i <= math.pi and 0.0 <= inc_f <= math.pi and -math.inf < gap < math.inf):

@@ -9,7 +9,8 @@ from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, replace
 from itertools import product
 
-from burntally_service.kernels.half_turns import Arc, Impulse, apse_turn, coasting_time
+from burntally_service.kernels.ellipses import apse_turn, coasting_time
+from burntally_service.kernels.half_turns import Arc, Impulse
 from burntally_service.kernels.manoeuvres import combined_burn
 from burntally_service.kernels.planes import Crossing
 from burntally_service.legs.errand import COPLANAR, Errand

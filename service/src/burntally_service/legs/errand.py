@@ -3,7 +3,7 @@
 from dataclasses import dataclass
 from typing import Final
 
-from burntally_service.kernels.half_turns import Place
+from burntally_service.kernels.ellipses import Place
 from burntally_service.kernels.planes import Crossing
 from burntally_service.legs.orbit import Size
 

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from burntally.model.errors import UncomputableError, Violation
 from burntally.model.mission import Hyperbola, Location, Orbit, OrbitLocation
 from burntally_service.bodies import Body
-from burntally_service.kernels.half_turns import Place, apsis_place, ellipse_place
+from burntally_service.kernels.ellipses import Place, apsis_place, ellipse_place
 from burntally_service.kernels.orbits import opposite_apsis, semi_major_axis
 
 __all__ = [

@@ -4,9 +4,9 @@ import math
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 
+from burntally_service.kernels.ellipses import Place
 from burntally_service.kernels.half_turns import (
     HalfTurn,
-    Place,
     TwoHalfTurns,
     half_turn,
     two_half_turns,

@@ -8,7 +8,7 @@ from burntally.model.budget import Caution
 from burntally.model.errors import UncomputableError, Violation
 from burntally.model.mission import Hyperbola, Location, OrbitLocation, Transfer
 from burntally_service.bodies import Body
-from burntally_service.kernels.half_turns import Place
+from burntally_service.kernels.ellipses import Place
 from burntally_service.kernels.hyperbolas import hyperbolic_excess_speed, hyperbolic_speed
 from burntally_service.kernels.planes import Crossing, crossing
 from burntally_service.legs.errand import COPLANAR, Errand
