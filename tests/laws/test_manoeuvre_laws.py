@@ -7,6 +7,8 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from burntally_service.kernels import manoeuvres, transfers
+from burntally_service.kernels.ellipses import apsis_place
+from burntally_service.kernels.half_turns import half_turn
 from burntally_service.kernels.manoeuvres import Apsis, Burn
 from burntally_service.kernels.orbits import apsis_speed, circular_speed
 from burntally_service.kernels.transfers import Transfer
@@ -56,6 +58,15 @@ def test_bielliptic_by_way_of_the_target_is_hohmann(mu: float, r_1: float, r_2: 
     detour = transfers.bielliptic(mu, Apsis(r_1, r_1), r_2, Apsis(r_2, r_2), 0.0)
     direct = transfers.hohmann(mu, r_1, r_2)
     assert detour.dv == pytest.approx(direct.dv, rel=1e-14)
+
+
+@given(MU, APSIS, APSIS, ANGLE)
+def test_half_turns_between_apsides_are_apsis_transfers(mu: float, one: Apsis, other: Apsis, angle: float) -> None:
+    along_apses = transfers.apsis_transfer(mu, one, other, angle)
+    anywhere = half_turn(mu, apsis_place(mu, one.r, one.r_opposite), apsis_place(mu, other.r, other.r_opposite), angle)
+    bound = 1e-9 * circular_speed(mu, min(one.r, other.r))
+    assert anywhere.dv == pytest.approx(along_apses.dv, rel=1e-9, abs=bound)
+    assert anywhere.arc.tof == pytest.approx(along_apses.tof, rel=1e-6)
 
 
 @given(MU, APSIS, SPAN, ANGLE, st.floats(0.0, 1.0))

@@ -204,6 +204,11 @@ def test_at_the_end_of_its_domain_a_kernel_answers_the_limit(
     assert kernel(*arguments) == limit
 
 
+def test_a_layer_begins_at_its_base() -> None:
+    cold = AirLayer(5e3, 200.0, 0.0, 5e4)
+    assert atmosphere.layered_air(5e3, [GROUND, cold, TOP], 287.0, 1.4).temperature == 200.0
+
+
 def test_a_poor_stage_under_a_good_one_is_left_out() -> None:
     speeds, coefficients = [1500.0, 4500.0], [0.3, 0.1]
     p = staging.staging_multiplier(2000.0, speeds, coefficients)
