@@ -97,6 +97,11 @@ class TestPlane:
         assert [burn.name for burn in plan.manoeuvres] == ["circularise", "change plane"]
         assert plan.manoeuvres[1].coast_before > 0.0
 
+    def test_a_way_too_fast_for_an_ellipse_is_left_out(self) -> None:
+        start = orbit(periapsis=14e6, apoapsis=1.8e9, inclination=120.0, argument_of_periapsis=280.0)
+        leg = Transfer(to=Orbit(altitude=1.4e8, inclination=0.0), apoapsis_max=3e9)
+        assert "change plane" in [burn.name for burn in flown(leg, start).manoeuvres]
+
     def test_the_node_counts_where_both_are_known(self) -> None:
         start = orbit(altitude=LEO, inclination=55.0, raan=10.0)
         assert flown(transfer(raan=55.0), start).delta_v > 0.0

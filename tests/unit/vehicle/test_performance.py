@@ -144,6 +144,13 @@ class TestMixtures:
         assert codes(found) == [("feed-unbalanced", "/vehicle/stages/0/engines/0/feeds")]
         assert found.findings[0].value == pytest.approx(1000.0, rel=1e-14)
 
+    def test_a_mixture_without_one_of_its_loads_never_lights(self) -> None:
+        engine = Engine(thrust=1e5, isp=300.0, feeds={"oxidiser": 3.0, "fuel": 1.0})
+        loads = [Load(name="oxidiser", mass=6000.0), Load(name="fuel", mass=0.0)]
+        found = performance(two_stages(loads=loads, engines=[engine]))
+        assert found.stages[0].phases == []
+        assert codes(found) == [("feed-unbalanced", "/vehicle/stages/0/engines/0/feeds")]
+
     def test_half_a_percent_is_let_pass(self) -> None:
         engine = Engine(thrust=1e5, isp=300.0, feeds={"oxidiser": 2.009, "fuel": 1.0})
         assert codes(performance(two_stages(loads=list(self.LOADS), engines=[engine]))) == []

@@ -66,7 +66,7 @@ class _Flight:
 
 def needs_turning_apart(errand: Errand) -> bool:
     """Whether burns on one line of apsides cannot do all that is asked."""
-    if errand.initial is None:
+    if errand.arriving is not None:
         return False
     off_line = abs(math.sin(errand.apse_i - errand.turn.argument_i)) > _ALIGNED
     return errand.asks_apse or (errand.turns and off_line and not errand.starts_on_circle)
@@ -91,8 +91,6 @@ def turned_apart(errand: Errand, bases: Iterable[Path]) -> Iterator[Path]:
 
 def _turned(errand: Errand, base: Path, gap: float, *, plane_early: bool, apse_early: bool) -> Path | None:
     """Fly a base with its turns put before or after."""
-    if errand.initial is None:
-        return None
     flight = _Flight(mu=errand.mu, size=errand.initial, apse=errand.apse_i, nu=None, steps=[])
     if apse_early:
         flight.turn_apse(gap)

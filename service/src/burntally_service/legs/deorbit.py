@@ -6,7 +6,7 @@ from burntally.model.mission import Deorbit, Location, Orbit, OrbitLocation
 from burntally_service.bodies import Body
 from burntally_service.kernels.half_turns import Impulse
 from burntally_service.kernels.manoeuvres import Apsis, apsis_change
-from burntally_service.legs.orbit import body_named, location_after, size_after, size_of
+from burntally_service.legs.orbit import Size, body_named, location_after, size_after, size_of
 from burntally_service.legs.path import BURN_LEAST, Step
 from burntally_service.legs.planned import LegPlan, PlanFinding, unplanned
 
@@ -38,15 +38,12 @@ def plan_deorbit(leg: Deorbit, start: Location | None, bodies: Mapping[str, Body
     burntally.model.errors.UncomputableError
         If the periapsis is at or beyond the centre of the body.
     """
-    end = deorbited(leg, start, bodies, pointer=pointer)
-    if end is None or not isinstance(start, OrbitLocation) or end.body is None:
+    lowered = _lowered(leg, start, bodies, pointer)
+    if lowered is None:
         message = "a deorbit starts from an orbit, and where this leg starts is not one"
         return unplanned(PlanFinding(code="location-unknown", message=message))
-    body = bodies[end.body]
-    size, final = size_of(start, body, pointer=""), size_of(end, body, pointer=f"{pointer}/periapsis")
-    if size is None or final is None:
-        return LegPlan(source="computed", end=end)
-    burn = apsis_change(body.mu, Apsis(size.r_apo, size.r_peri), final.r_peri, 0.0)
+    body, size, r_peri, end = lowered
+    burn = apsis_change(body.mu, Apsis(size.r_apo, size.r_peri), r_peri, 0.0)
     impulse = Impulse(burn.dv, 0.0, burn.transverse, burn.normal, burn.plane_change)
     step = Step(name="lower periapsis", place="apoapsis", r=size.r_apo, impulse=impulse)
     manoeuvres = (step.manoeuvre(body.name),) if burn.dv > BURN_LEAST else ()
@@ -60,6 +57,14 @@ def deorbited(
 
     A periapsis that is lower already stays: a deorbit never raises.
     """
+    lowered = _lowered(leg, start, bodies, pointer)
+    return None if lowered is None else lowered[-1]
+
+
+def _lowered(
+    leg: Deorbit, start: Location | None, bodies: Mapping[str, Body], pointer: str
+) -> tuple[Body, Size, float, OrbitLocation] | None:
+    """Body, size before, radius of the periapsis after, and where the leg ends; None where the start is no orbit."""
     if not isinstance(start, OrbitLocation) or start.body is None:
         return None
     body = body_named(start.body, bodies, pointer=f"{pointer}/periapsis")
@@ -69,5 +74,6 @@ def deorbited(
     to = Orbit(periapsis=leg.periapsis)
     final = size_after(to, size, body, pointer=pointer)
     if final.r_peri >= size.r_peri:
-        return start
-    return location_after(to, start, body, argument_of_periapsis=start.argument_of_periapsis)
+        return body, size, size.r_peri, start
+    end = location_after(to, start, body, argument_of_periapsis=start.argument_of_periapsis)
+    return body, size, final.r_peri, end

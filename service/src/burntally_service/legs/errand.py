@@ -21,8 +21,8 @@ class Errand:
     ----------
     mu : float
         Gravitational parameter, [m3/s2].
-    initial : Size or None
-        Orbit before; None on a hyperbola.
+    initial : Size
+        Orbit before; on a hyperbola, the one after in its stead.
     arriving : Place or None
         Periapsis of the hyperbola before, if there is one.
     apse_i : float
@@ -36,7 +36,7 @@ class Errand:
     """
 
     mu: float
-    initial: Size | None
+    initial: Size
     arriving: Place | None = None
     apse_i: float = 0.0
     final: Size
@@ -46,7 +46,7 @@ class Errand:
     @property
     def starts_on_circle(self) -> bool:
         """Whether the first burn may be anywhere on the orbit before."""
-        return self.initial is not None and self.initial.is_circular
+        return self.arriving is None and self.initial.is_circular
 
     @property
     def turns(self) -> bool:
@@ -56,7 +56,7 @@ class Errand:
     @property
     def asks_apse(self) -> bool:
         """Whether the apse line must end where no free choice of the first burn puts it."""
-        if self.apse_f is None or self.final.is_circular or self.initial is None:
+        if self.apse_f is None or self.final.is_circular or self.arriving is not None:
             return False
         return self.turns or not self.starts_on_circle
 

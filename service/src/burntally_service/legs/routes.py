@@ -80,8 +80,6 @@ def _departures(errand: Errand) -> Iterator[_End]:
         yield _End(place=errand.arriving, opposite=None, argument=0.0, nu=0.0)
         return
     size = errand.initial
-    if size is None:
-        return
     for argument, side in _lines(errand):
         nu = argument - errand.apse_i
         place = size.place(errand.mu, nu)
@@ -128,7 +126,7 @@ def _final_apse(errand: Errand, arrival: _End) -> float | None:
     """Argument of periapsis after [rad]; None where the start leaves the direction of the line open."""
     if errand.apse_f is not None:
         return errand.apse_f
-    if errand.final.is_circular or errand.starts_on_circle or errand.initial is None:
+    if errand.final.is_circular or errand.starts_on_circle or errand.arriving is not None:
         return None
     return errand.carried(arrival.argument) - arrival.nu
 

@@ -6,7 +6,7 @@ from dataclasses import dataclass, replace
 
 from burntally.model.budget import Caution
 from burntally.model.errors import UncomputableError, Violation
-from burntally.model.mission import Hyperbola, Location, OrbitLocation, Transfer
+from burntally.model.mission import Hyperbola, Location, Orbit, OrbitLocation, Transfer
 from burntally_service.bodies import Body
 from burntally_service.kernels.ellipses import Place
 from burntally_service.kernels.hyperbolas import hyperbolic_excess_speed, hyperbolic_speed
@@ -174,7 +174,7 @@ def _from_hyperbola(leg: Transfer, start: Hyperbola, body: Body, pointer: str) -
     if not (r > 0.0 and math.isfinite(v)):
         return _lost("the arrival has no excess speed, so it is no hyperbola")
     apse_f = radians_or_none(leg.to.argument_of_periapsis)
-    errand = Errand(mu=body.mu, initial=None, arriving=Place(r, 0.0, v), final=size, apse_f=apse_f)
+    errand = Errand(mu=body.mu, initial=size, arriving=Place(r, 0.0, v), final=size, apse_f=apse_f)
     aimed = (_AIM_ASSUMED,) if leg.to.inclination is not None or apse_f is not None else ()
     return _Asked(errand=errand, start=before, cautions=aimed)
 
@@ -191,10 +191,8 @@ def _captured_size(leg: Transfer, before: OrbitLocation, body: Body, pointer: st
     size = size_of(leg.to, body, pointer=f"{pointer}/to")
     if size is not None or leg.to.apoapsis is None or before.periapsis is None:
         return size
-    low = body.radius_at(before.periapsis)
-    if not low > 0.0:
-        return None
-    return size_after(leg.to, Size(r_peri=low, r_apo=low), body, pointer=f"{pointer}/to")
+    low = size_of(Orbit(altitude=before.periapsis), body, pointer=f"{pointer}/to")
+    return None if low is None else size_after(leg.to, low, body, pointer=f"{pointer}/to")
 
 
 def _meant_end(leg: Transfer, start: Location, body: Body, pointer: str) -> OrbitLocation | None:

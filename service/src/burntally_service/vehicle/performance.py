@@ -208,10 +208,7 @@ def _pressure_findings(item: _Stacked, engines: Sequence[LitEngine]) -> Iterator
 def _feed_findings(item: _Stacked, engines: Sequence[LitEngine], left: Sequence[float]) -> Iterator[Finding]:
     """Yield the engines that went out with propellant left in another of their loads, one finding each."""
     for engine in engines:
-        fed = [load for load, _ in engine.feeds]
-        if all(left[load] > 0.0 or item.usable[load] <= 0.0 for load in fed):
-            continue
-        load = max(fed, key=left.__getitem__)
+        load = max((load for load, _ in engine.feeds), key=left.__getitem__)
         stated = item.stage.propellants[load]
         limit = _UNBALANCED * stated.mass
         if left[load] > limit:
