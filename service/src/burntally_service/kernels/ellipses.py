@@ -99,11 +99,9 @@ def ellipse_place(mu: float, r_peri: float, r_apo: float, nu: float) -> Place:
     ecc = (1.0 - ratio) / (1.0 + ratio)
     slr = 2.0 * r_peri / (1.0 + ratio)
     cosine, sine = math.cos(0.5 * nu), math.sin(0.5 * nu)
-    # 1 + e cos(nu) by the half angle, which keeps its digits where the ellipse is thin and far out.
-    below = cosine * cosine + ratio * (sine * sine)
-    if not below > 0.0:
-        return _NO_PLACE
-    r = r_peri / below
+    # 1 + e cos(nu) by the half angle, which keeps its digits where the ellipse is thin and far out; no double has a
+    # cosine of zero.
+    r = r_peri / (cosine * cosine + ratio * (sine * sine))
     # The square root of mu over slr, taken apart since their product or ratio may not fit a double.
     speed = math.sqrt(mu) / math.sqrt(slr)
     return Place(r, speed * ecc * math.sin(nu), speed * (slr / r))
