@@ -1,0 +1,93 @@
+"""Worked examples of margin by slack, to all the digits that the contract gives, and the textbook's case."""
+
+import math
+from typing import Any
+
+import pytest
+
+from burntally_service.kernels.constants import G0
+from tests.unit.budget.designs import branch, budget_of, burn, design, engine, stage
+
+
+def released() -> dict[str, Any]:
+    """A stage that burns before, between and after the releases of two payloads."""
+    return design(
+        [
+            burn(300.0),
+            {"kind": "release", "payload": "big"},
+            burn(400.0),
+            {"kind": "release", "payload": "small"},
+            burn(150.0),
+        ],
+        stage(propellants=[{"mass": 400.0, "residual_fraction": 0.02}]),
+        payloads=[{"name": "big", "mass": 300.0}, {"name": "small", "mass": 200.0}],
+    )
+
+
+def lander(*, named: bool) -> dict[str, Any]:
+    """A descent stage and an ascent stage, whose legs name their payers or leave them open."""
+    below, above = (("descent",), ("ascent",)) if named else ((), ())
+    return design(
+        [
+            burn(900.0, *below),
+            burn(2050.0, *below),
+            {"kind": "separate", "stages": ["descent"]},
+            burn(1850.0, *above),
+        ],
+        stage("descent", dry_mass=2200.0, propellants=[{"mass": 8200.0}], engines=[engine(isp=320.0)]),
+        stage("ascent", dry_mass=1100.0, propellants=[{"mass": 1500.0}], engines=[engine(isp=315.0)]),
+        payloads=[{"name": "crew", "mass": 200.0}],
+    )
+
+
+def slacks(plain: dict[str, Any]) -> list[float | None]:
+    """Slack of every leg that has one."""
+    return [leg.slack for leg in branch(budget_of(plain)).legs if leg.slack is not None]
+
+
+def test_slack_of_released_payloads() -> None:
+    assert slacks(released()) == pytest.approx([365.4188, 487.3245, 652.3206], abs=5e-5, rel=0.0)
+
+
+def test_margin_of_released_payloads_is_the_first_slack() -> None:
+    budget = budget_of(released())
+    assert budget.margin == pytest.approx(365.4188, abs=5e-5, rel=0.0)
+    assert budget.limiting
+    assert budget.limiting.leg == 0
+
+
+def test_released_payloads_leave_propellant_that_is_worth_more_to_the_empty_stage() -> None:
+    tug = budget_of(released()).stages[0]
+    assert tug.loads[0].left == pytest.approx(117.3746, abs=5e-5, rel=0.0)
+    assert tug.delta_v.left == pytest.approx(652.32, abs=5e-3, rel=0.0)
+
+
+def test_slack_of_several_ends() -> None:
+    assert slacks(lander(named=True)) == pytest.approx([96.4285, 96.4285, 520.1239], abs=5e-5, rel=0.0)
+
+
+def test_margin_of_several_ends_is_the_least_of_them() -> None:
+    assert budget_of(lander(named=True)).margin == pytest.approx(96.4285, abs=5e-5, rel=0.0)
+
+
+def test_several_ends_leave_propellant_in_the_descent_stage() -> None:
+    assert budget_of(lander(named=True)).stages[0].loads[0].left == pytest.approx(156.0251, abs=5e-5, rel=0.0)
+
+
+def test_unnamed_legs_let_the_ascent_stage_cover_the_descent() -> None:
+    # Held by hand: the descent stage's 96.4285 m/s, then what the ascent stage can spare of its own burn.
+    v_exhaust, ascent = 315.0 * G0, 2800.0
+    spare = v_exhaust * math.log(ascent / (ascent - 1500.0)) - 1850.0
+    named, unnamed = slacks(lander(named=True)), slacks(lander(named=False))
+    assert named[0] is not None
+    assert unnamed == pytest.approx([named[0] + spare, named[0] + spare, spare], rel=1e-9, abs=0.0)
+
+
+def test_unnamed_legs_are_worth_more() -> None:
+    assert slacks(lander(named=False))[:2] == pytest.approx([616.55, 616.55], abs=5e-3, rel=0.0)
+
+
+def test_margin_without_mass_events_is_the_textbooks_ideal_delta_v_left() -> None:
+    plain = design([burn(300.0), burn(400.0), burn(150.0)], stage(propellants=[{"mass": 400.0}]))
+    v_exhaust = 320.0 * G0
+    assert budget_of(plain).margin == pytest.approx(v_exhaust * math.log(900.0 / 500.0) - 850.0, rel=1e-12, abs=0.0)
