@@ -35,8 +35,13 @@ def test_one_module_of_the_contract_knows_astropy() -> None:
     assert len([path for path in MODEL.glob("**/*.py") if "astropy" in _imported(path)]) <= 1
 
 
+# Rows of the tally are structs, which Python reads and makes four times as fast as named tuples; their compiled twins
+# are numpy's records.
+_ALLOWED = {"tally_rows": {"msgspec"}, "_records": {"numpy"}}
+
+
 @pytest.mark.parametrize(
     "path", [path for path in sorted(KERNELS.glob("**/*.py")) if path.stem != "_compile"], ids=lambda path: path.stem
 )
 def test_kernels_rest_on_the_standard_library(path: Path) -> None:
-    assert _foreign(path, "burntally_service.kernels") == set()
+    assert _foreign(path, "burntally_service.kernels") <= _ALLOWED.get(path.stem, set())

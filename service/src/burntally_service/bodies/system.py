@@ -41,7 +41,7 @@ def system_of(system: mission.System | None, *, pointer: str = "/mission/system"
     """
     if system is None:
         return catalogue()
-    known = catalogue() if system.base == "solar" else {}
+    known: Mapping[str, Body] = catalogue() if system.base == "solar" else {}
     if violations := list(_violations(system, known, f"{pointer}/bodies")):
         raise errors.InconsistentError(violations)
     stated = {body.name: body for body in system.bodies}

@@ -21,7 +21,7 @@ from burntally_service.budget.plan import BranchPlan, PlannedLeg
 from burntally_service.kernels import tally_rows as rows
 from burntally_service.legs.epochs import epoch_after
 
-__all__ = ["branch_books", "limiting_mark", "local_gravity", "margin_of"]
+__all__ = ["branch_books", "limiting_mark", "load_name", "local_gravity", "margin_of"]
 
 LIMITING_TOLERANCE = 1e-6
 """A leg within this of the least slack limits [m/s] (rule M)."""
@@ -83,7 +83,7 @@ def branch_books(drawn: Drawn, faulty: set[str]) -> list[BranchBook]:
     by_leg: dict[int, list[Line]] = {}
     for line in drawn.lines:
         by_leg.setdefault(line.leg, []).append(line)
-    books = []
+    books: list[BranchBook] = []
     for branch, plan in enumerate(drawn.branches):
         if plan is None:
             name = drawn.design.mission.branches[branch - 1].of
@@ -161,7 +161,7 @@ def _rule_used(row: PlannedLeg) -> RuleUsed | None:
 
 def _manoeuvres(row: PlannedLeg, began: float) -> list[Manoeuvre]:
     """Ideal manoeuvres of a leg, each at its time."""
-    manoeuvres = []
+    manoeuvres: list[Manoeuvre] = []
     time = began
     for planned in row.plan.manoeuvres:
         time += planned.coast_before

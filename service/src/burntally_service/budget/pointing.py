@@ -46,8 +46,11 @@ def value_at(root: Any, pointer: str) -> Any:  # noqa: ANN401  (a pointer may le
     for token in _tokens(pointer):
         if isinstance(value, Struct):
             value = getattr(value, _field(value, token))
+        elif isinstance(value, list):
+            items: list[Any] = value
+            value = items[int(token)]
         else:
-            value = value[int(token)] if isinstance(value, list) else value[token]
+            value = value[token]
     return value
 
 
@@ -80,7 +83,7 @@ def _replaced(root: Any, tokens: list[str], value: object) -> object:  # noqa: A
         attribute = _field(root, token)
         return structs.replace(root, **{attribute: _replaced(getattr(root, attribute), rest, value)})
     if isinstance(root, list):
-        copied = list(root)
-        copied[int(token)] = _replaced(root[int(token)], rest, value)
+        copied = list(cast("list[object]", root))
+        copied[int(token)] = _replaced(copied[int(token)], rest, value)
         return copied
     return {**root, token: _replaced(root.get(token), rest, value)}

@@ -86,12 +86,12 @@ def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
         return findings
     bench = _Bench(drawn.design, len(drawn.lowered.tables.steps))
     by_branch: dict[str, list[Remedy]] = {}
-    mended = []
+    mended: list[Finding] = []
     for finding in findings:
         if finding.code not in _SHORT:
             mended.append(finding)
             continue
-        remedies = []
+        remedies: list[Remedy] = []
         if finding.code in _OWING and finding.branch is not None:
             if finding.branch not in by_branch:
                 by_branch[finding.branch] = _owed_remedies(drawn, finding.branch, None, bench)
@@ -108,7 +108,7 @@ def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
 
 def _owed_remedies(drawn: Drawn, name: str, leg: int | None, bench: _Bench) -> list[Remedy]:
     """Changes that let a whole branch be paid, or one leg of it, the smallest first."""
-    found = []
+    found: list[tuple[float, Remedy]] = []
     for change in _changes(drawn, _branch_index(drawn, name), leg):
 
         def owed(value: float, change: _Change = change) -> float:

@@ -6,7 +6,7 @@ from burntally.model.errors import UncomputableError, Violation
 from burntally.model.rules import Contingency, Limits, Rules
 from burntally_service.budget.presets import preset_rules
 
-__all__ = ["resolve", "rule_for"]
+__all__ = ["no_rule", "resolve", "rule_for"]
 
 
 def resolve(rules: Rules, *, pointer: str = "/rules") -> Rules:

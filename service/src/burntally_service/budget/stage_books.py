@@ -131,7 +131,7 @@ def _left(drawn: Drawn) -> list[float]:
 
 def deliveries(drawn: Drawn) -> list[Delivery]:
     """Payloads released, in order."""
-    delivered = []
+    delivered: list[Delivery] = []
     for line in drawn.lines:
         row = drawn.lowered.legs[line.leg][1]
         if line.kind == rows.LINE_RELEASE and row is not None:

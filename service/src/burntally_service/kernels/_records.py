@@ -153,9 +153,8 @@ def flat_cells(record: NDArray[np.void]) -> tuple[NDArray[np.float64], dict[str,
     """
     import numpy as np
 
-    places = {}
-    for name in record.dtype.names or ():
-        field, offset = record.dtype.fields[name][:2]  # type: ignore[index]
-        width = field.base.itemsize // 8
-        places[name] = (offset // 8, width)
+    places: dict[str, tuple[int, int]] = {}
+    fields: Any = record.dtype.fields
+    for name, (field, offset) in fields.items():
+        places[name] = (offset // 8, field.base.itemsize // 8)
     return record.view(np.float64).reshape(-1), places

@@ -20,6 +20,7 @@ from burntally_service.kernels.tally_rows import (
     LINES,
     PAID,
     RESERVE,
+    ROOM,
     STAMP,
     START,
     Books,
@@ -55,7 +56,8 @@ def tally(tables: Tables, books: Books) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> empty = no_tables()
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> empty = NO_TABLES
     >>> tally(empty, blank_books(empty, 0))
     """
     load_up(tables, books)
@@ -123,7 +125,7 @@ def _end(tables: Tables, books: Books, leg: int) -> None:
     books.mass_after[leg] = books.branch_mass[branch]
     books.clock_after[leg] = books.branch_clock[branch]
     books.line_end[leg] = books.count[LINES]
-    if row.charged:
+    if row.charged and books.count[ROOM] > 0:
         _note_spare(tables, books, leg, leg)
     if row.reserves:
         _hold_reserve(tables, books, leg)
@@ -175,12 +177,15 @@ def _hold_reserve(tables: Tables, books: Books, leg: int) -> None:
         books.branch_owed[branch] += owed
     if books.count[ADD_AT] == mark:
         _add(tables, books, leg)
-    if amount > 0.0:
+    if amount > 0.0 and books.count[ROOM] > 0:
         _note_spare(tables, books, leg, mark)
 
 
 def _note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
-    """Note which stage of a leg's account would pay an addition here, and how much it has (rule M)."""
+    """Note which stage of a leg's account would pay an addition here, and how much it has (rule M).
+
+    Only books with room for lines are walked for slack, so others are spared this.
+    """
     stages = tables.n_stages
     row = tables.legs[leg]
     base = row.account * stages
@@ -266,7 +271,8 @@ def _draw(tables: Tables, books: Books, leg: int, amount: float) -> None:
             books.cause[leg] = cause_of(tables, books, leg)
             books.owed[leg] += delta_v
             books.branch_owed[row.branch] += delta_v
-    _note_spare(tables, books, leg, leg)
+    if books.count[ROOM] > 0:
+        _note_spare(tables, books, leg, leg)
 
 
 def _speed_of_lowest(tables: Tables, books: Books, account: int) -> float:

@@ -5,30 +5,10 @@ from typing import Any, Final
 from burntally_service.kernels.constants import G0
 from burntally_service.kernels.tally_rows import BLANK, LINE_WIDTH, LINES, NOT_FLOWN, STAMP, Books, Tables
 
-__all__ = ["DRY_FRACTION", "blank_books", "engines_flow", "load_up", "no_tables", "stage_mass", "wipe"]
+__all__ = ["DRY_FRACTION", "blank_books", "engines_flow", "load_up", "stage_mass", "wipe"]
 
 DRY_FRACTION: Final = 1e-9
 """A load below this share of what was loaded is dry (P7)."""
-
-
-def no_tables() -> Tables:
-    """Tables of nothing.
-
-    Returns
-    -------
-    Tables
-        Every row list empty, every count 0, [-].
-
-    References
-    ----------
-    .. [1] The project's bookkeeping rules; no published source.
-
-    Examples
-    --------
-    >>> no_tables().n_legs
-    0
-    """
-    return Tables([], [], [], [], [], [], [], [], [], [], [], [], [], [])
 
 
 def blank_books(tables: Tables, lines: int) -> Books:
@@ -44,7 +24,7 @@ def blank_books(tables: Tables, lines: int) -> Books:
     Returns
     -------
     Books
-        Lists of zeros.
+        Lists of blank entries, [-].
 
     References
     ----------
@@ -52,8 +32,8 @@ def blank_books(tables: Tables, lines: int) -> Books:
 
     Examples
     --------
-    >>> from burntally_service.kernels.tally_rows import Tables
-    >>> blank_books(no_tables(), 0).lines
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> blank_books(NO_TABLES, 0).lines
     []
     """
     sizes = {
@@ -100,8 +80,8 @@ def load_up(tables: Tables, books: Books) -> None:
 
     Examples
     --------
-    >>> from burntally_service.kernels.tally_rows import Tables
-    >>> empty = no_tables()
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> empty = NO_TABLES
     >>> load_up(empty, blank_books(empty, 0))
     """
     stages = tables.n_stages
@@ -150,8 +130,8 @@ def engines_flow(tables: Tables, books: Books) -> None:
 
     Examples
     --------
-    >>> from burntally_service.kernels.tally_rows import Tables
-    >>> empty = no_tables()
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> empty = NO_TABLES
     >>> engines_flow(empty, blank_books(empty, 0))
     """
     for engine in range(tables.n_engines):
@@ -189,7 +169,7 @@ def stage_mass(tables: Tables, books: Books, stage: int) -> float:
     Examples
     --------
     >>> from burntally_service.kernels.tally_rows import StageRow, Tables
-    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 12)
+    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 12, n_stages=1)
     >>> stage_mass(tables, blank_books(tables, 0), 0)
     0.0
     """
@@ -224,8 +204,8 @@ def wipe(tables: Tables, books: Books) -> None:
 
     Examples
     --------
-    >>> from burntally_service.kernels.tally_rows import Tables
-    >>> wipe(no_tables(), blank_books(no_tables(), 0))
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> wipe(NO_TABLES, blank_books(NO_TABLES, 0))
     """
     for load in range(tables.n_loads):
         books.burned[load] = books.lost[load] = books.boiled[load] = books.handed[load] = books.taken[load] = 0.0

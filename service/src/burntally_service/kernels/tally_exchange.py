@@ -42,7 +42,7 @@ def exchange(tables: Tables, books: Books, op: int, order: tuple[int, int, float
     Returns
     -------
     None
-        The books are changed; a part that is not aboard is told by a line.
+        The books are changed, masses in [kg]; a part that is not aboard is told by a line.
 
     References
     ----------
@@ -51,7 +51,8 @@ def exchange(tables: Tables, books: Books, op: int, order: tuple[int, int, float
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> empty = no_tables()
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> empty = NO_TABLES
     >>> exchange(empty, blank_books(empty, 0), -1, (0, 0, 0.0))
     """
     leg, part, amount = order

@@ -32,7 +32,8 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> books = blank_books(no_tables(), 1)
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> books = blank_books(NO_TABLES, 1)
     >>> write_line(books, (0, 0, 0), (0.0, 1.0, 2.0, 3.0, 4.0, 0.0, 0.0))
     >>> books.lines[4:8]
     [1.0, 2.0, 3.0, 4.0]
@@ -55,7 +56,37 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
 
 
 def can_burn(tables: Tables, books: Books, engine: int) -> bool:
-    """Tell whether an engine is lit or has an ignition left, and has propellant in every load that feeds it (P1)."""
+    """Tell whether an engine is lit or has an ignition left, and has propellant in every load that feeds it.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        The books as they stand.
+    engine : int
+        Index of the engine, [-].
+
+    Returns
+    -------
+    bool
+        Whether it can burn, [-].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rule P1; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import EngineRow
+    >>> engine = EngineRow(1, 400.0, 300.0, 0.0, 0.0, 0, 0, 0)
+    >>> tables = Tables([], [], [], [engine], *([],) * 10, n_engines=1)
+    >>> books = blank_books(tables, 0)
+    >>> books.lit_at[0] = -1.0
+    >>> can_burn(tables, books, 0)
+    False
+    """
     row = tables.engines[engine]
     if books.used[engine] >= row.max_ignitions and books.lit_at[engine] != books.count[STAMP]:
         return False
@@ -95,7 +126,7 @@ def light_flow(tables: Tables, books: Books, burner: int) -> tuple[float, float,
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> from burntally_service.kernels.tally_rows import BurnerRow, StageRow
-    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 4, [BurnerRow(0, 0, 0)], *([],) * 7)
+    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 4, [BurnerRow(0, 0, 0)], *([],) * 7, n_stages=1)
     >>> light_flow(tables, blank_books(tables, 0), 0)
     (0.0, 0.0, 0)
     """
@@ -156,7 +187,7 @@ def spare_of(tables: Tables, books: Books, stage: int) -> tuple[float, int]:
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> from burntally_service.kernels.tally_rows import StageRow
-    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 12)
+    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 12, n_stages=1)
     >>> spare_of(tables, blank_books(tables, 0), 0)
     (inf, -1)
     """
@@ -173,7 +204,35 @@ def spare_of(tables: Tables, books: Books, stage: int) -> tuple[float, int]:
 
 
 def wants_ignition(tables: Tables, books: Books, burner: int) -> bool:
-    """Tell whether an engine of a burner has propellant in all its feeds, and only lacks an ignition."""
+    """Tell whether an engine of a burner has propellant in all its feeds, and only lacks an ignition.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        The books as they stand.
+    burner : int
+        Index of the burner, [-].
+
+    Returns
+    -------
+    bool
+        Whether an ignition is all that it lacks, [-].
+
+    References
+    ----------
+    .. [1] The project's finding `ignitions-exceeded`; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import BurnerRow, EngineRow
+    >>> engine = EngineRow(1, 400.0, 300.0, 0.0, 0.0, 0, 0, 0)
+    >>> tables = Tables([], [], [], [engine], [], [], [BurnerRow(0, 0, 1)], [0], *([],) * 6, n_engines=1)
+    >>> wants_ignition(tables, blank_books(tables, 0), 0)
+    True
+    """
     row = tables.burners[burner]
     for place in range(row.first_lit, row.end_lit):
         engine = tables.lit[place]

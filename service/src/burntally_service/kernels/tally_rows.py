@@ -14,6 +14,7 @@ from msgspec import Struct
 __all__ = [
     "BLANK",
     "LINE_WIDTH",
+    "NO_TABLES",
     "Books",
     "BranchRow",
     "BurnerRow",
@@ -233,6 +234,10 @@ class Tables(Struct, frozen=True):
     n_legs: int = 0
     n_rules: int = 0
     n_steps: int = 0
+
+
+NO_TABLES: Final = Tables([], [], [], [], [], [], [], [], [], [], [], [], [], [])
+"""Tables of nothing."""
 
 
 class Books(Struct, frozen=True):

@@ -83,7 +83,8 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> empty = no_tables()
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> empty = NO_TABLES
     >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], [], [-1.0]])
     """
     legs = tables.n_legs
@@ -265,8 +266,8 @@ def slack_by_search(tables: Tables, scratch: Books, mark: int) -> float:
     owed_high = owed_with(tables, scratch, mark, high)
     if owed_high <= 0.0:
         return high
-    low = 0.0
-    guess = high - owed_high
+    low: float = 0.0
+    guess: float = high - owed_high
     step = 0.0
     for _ in range(MOST_TRIES):
         width = TOLERANCE * max(1.0, high)
