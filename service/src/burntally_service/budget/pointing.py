@@ -46,11 +46,8 @@ def value_at(root: Any, pointer: str) -> Any:  # noqa: ANN401  (a pointer may le
     for token in _tokens(pointer):
         if isinstance(value, Struct):
             value = getattr(value, _field(value, token))
-        elif isinstance(value, list):
-            items: list[Any] = value
-            value = items[int(token)]
         else:
-            value = value[token]
+            value = value[int(token) if isinstance(value, list) else token]
     return value
 
 
