@@ -101,32 +101,30 @@ def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int,
     purpose, amount = order
     branch = tables.legs[leg].branch
     stage = tables.burners[burner].stage
-    clock = books.branch_clock[branch]
     thrust, mdot, mask = light_flow(tables, books, burner)
     while mdot > 0.0:
         mass = books.branch_mass[branch]
         speed = thrust / mdot
         time, first_dry = spare_of(tables, books, stage)
         spare = mdot * time
+        wanted = amount if purpose == KILOGRAMS else -mass * math.expm1(-amount / speed)
+        enough = wanted <= spare
+        kg = wanted if enough else spare
+        paid = amount
         if purpose == KILOGRAMS:
-            kg = min(amount, spare)
-            paid = 0.0
-            left = amount - kg
-        else:
-            kg = -mass * math.expm1(-amount / speed)
-            if kg <= spare:
-                paid = amount
-            else:
-                kg = spare
-                paid = speed * math.log(mass / (mass - kg))
-            left = amount - paid
+            paid = kg
+        elif not enough:
+            paid = speed * math.log(mass / (mass - kg))
         _draw_down(tables, books, stage, kg / mdot)
         books.branch_mass[branch] = mass - kg
-        kind = LINE_DRAW if purpose == KILOGRAMS else LINE_BURN
-        write_line(books, (kind, leg, burner), (purpose, paid, kg, mass, clock, mask, spare - kg))
-        if left <= 0.0:
+        clock = books.branch_clock[branch]
+        if purpose == KILOGRAMS:
+            write_line(books, (LINE_DRAW, leg, burner), (purpose, 0.0, kg, mass, clock, mask, spare - kg))
+        else:
+            write_line(books, (LINE_BURN, leg, burner), (purpose, paid, kg, mass, clock, mask, spare - kg))
+        amount -= paid
+        if enough or amount <= 0.0:
             return 0.0
-        amount = left
         books.usable[first_dry] = 0.0
         books.flow_of[stage] = -1
         _mark_unbalanced(tables, books, stage, first_dry)
