@@ -36,9 +36,18 @@ _TEXTS: Final = {
 }
 
 
+def _packable(value: object) -> object:
+    """MessagePack has no integers beyond 64 bits; as floats they are as wrong."""
+    if isinstance(value, dict):
+        return {key: _packable(inner) for key, inner in value.items()}
+    if isinstance(value, list):
+        return [_packable(inner) for inner in value]
+    return float(value) if isinstance(value, int) and not -(2**63) <= value < 2**64 else value
+
+
 @schemathesis.serializer("application/msgpack")
 def _as_msgpack(_context: object, value: object) -> bytes:
-    return msgspec.msgpack.encode(value)
+    return msgspec.msgpack.encode(_packable(value))
 
 
 @schemathesis.deserializer("application/msgpack")
