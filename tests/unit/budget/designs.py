@@ -12,7 +12,7 @@ __all__ = ["branch", "budget_of", "burn", "design", "engine", "findings", "stage
 
 Plain = dict[str, Any]
 
-TESSALY: Plain = {"bodies": [{"name": "Tessaly", "gravitational_parameter": 4.2e14, "radius": 6.5e6}]}
+TESSALY: Plain = {"name": "Tessaly", "gravitational_parameter": 4.2e14, "radius": 6.5e6}
 ORBIT: Plain = {"kind": "orbit", "body": "Tessaly", "altitude": 4e5}
 
 
@@ -35,7 +35,7 @@ def burn(delta_v: float, *payers: str, **fields: Any) -> Plain:
 def design(legs: Sequence[Plain], *stages: Plain, **fields: Any) -> Plain:
     """Describe a design, of one tug unless stages are given; fields go to the vehicle, the mission or the rules."""
     vehicle = {"name": "tug", "stages": list(stages) or [stage()]}
-    mission = {"system": TESSALY, "start": ORBIT, "legs": list(legs)}
+    mission = {"system": {"bodies": [TESSALY]}, "start": ORBIT, "legs": list(legs)}
     rules: Plain = {"finite_burn": False}
     for name, value in fields.items():
         owner = vehicle if name == "payloads" else mission if name in {"branches", "start", "epoch"} else rules

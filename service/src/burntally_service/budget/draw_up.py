@@ -47,7 +47,7 @@ def draw_up(design: Design) -> Budget:
     findings = with_remedies(drawn, findings_of(drawn))
     faulty = {finding.branch for finding in findings if finding.severity == "error" and finding.branch is not None}
     margin, limiting = _margin(drawn)
-    initial = _initial_mass(drawn)
+    initial = drawn.initial_mass
     return Budget(
         closes=(margin is None or margin >= 0.0) and not any(finding.severity == "error" for finding in findings),
         margin=margin,
@@ -75,11 +75,6 @@ def _margin(drawn: Drawn) -> tuple[float | None, Limiting | None]:
             least = margin
             limiting = Limiting(branch=plan.name, leg=limiting_mark(drawn, branch))
     return least, limiting
-
-
-def _initial_mass(drawn: Drawn) -> float:
-    """Mass of the whole stack before the first leg [kg]."""
-    return drawn.books.mass_before[drawn.legs_of(0)[0][0]]
 
 
 def _payload(drawn: Drawn) -> float:

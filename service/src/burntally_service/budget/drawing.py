@@ -60,6 +60,11 @@ class Drawn:
         """Plans of the branches; None where a branch never started."""
         return self.lowered.branches
 
+    @property
+    def initial_mass(self) -> float:
+        """Mass of the whole stack before the first leg [kg]."""
+        return self.books.mass_before[self.legs_of(0)[0][0]]
+
     def legs_of(self, branch: int) -> list[tuple[int, PlannedLeg]]:
         """Legs of a branch with their index in the tables."""
         return [(leg, row) for leg, (of, row) in enumerate(self.lowered.legs) if of == branch and row is not None]

@@ -115,7 +115,7 @@ def _unpaid(drawn: Drawn) -> Iterator[Finding]:
 
 def _unpaid_leg(drawn: Drawn, leg: int, row: PlannedLeg) -> Finding:
     """The finding of a leg that owes."""
-    owed, cause = drawn.books.owed[leg], drawn.books.cause[leg]
+    owed, cause = drawn.books.owed[leg], _cause(drawn, leg, row)
     named = bool(row.account[0])
     payers = ", ".join(row.account[0])
     code, pointer = "leg-unpaid", row.pointer
@@ -145,6 +145,28 @@ def _unpaid_leg(drawn: Drawn, leg: int, row: PlannedLeg) -> Finding:
         leg=row.index,
         remedies=[],
     )
+
+
+def _cause(drawn: Drawn, leg: int, row: PlannedLeg) -> int:
+    """Why a leg owes; the tally knows those payers alone that have an engine, and the others may have left too."""
+    cause = drawn.books.cause[leg]
+    if not row.account[0] or cause not in {rows.GONE, rows.INERT}:
+        return cause
+    if not _aboard(drawn, leg).intersection(row.account[0]):
+        return rows.GONE
+    return rows.DRY if cause == rows.GONE else cause
+
+
+def _aboard(drawn: Drawn, leg: int) -> set[str]:
+    """Stages in the branch of a leg when it ends."""
+    where = [0] * len(drawn.lowered.stages)
+    for line in drawn.lines[: drawn.books.line_end[leg]]:
+        if line.kind == rows.LINE_SEPARATION:
+            where[line.part] = line.purpose
+        elif line.kind == rows.LINE_DOCKED:
+            where[line.part] = drawn.lowered.legs[line.leg][0]
+    branch = drawn.lowered.legs[leg][0]
+    return {drawn.part_name(stage) for stage, at in enumerate(where) if at == branch}
 
 
 def _exhausted_engine(drawn: Drawn, account: int) -> int:

@@ -157,7 +157,8 @@ def _changes(drawn: Drawn, branch: int, only: int | None) -> Iterator[_Change]:
             row_of_load = tables.loads[load]
             model = drawn.lowered.stages[stage].propellants[place]
             pointer = f"/vehicle/stages/{stage}/propellants/{place}/mass"
-            bound = min(row_of_load.capacity, max(1.0, 1000.0 * model.mass), 1e9)
+            # An empty load tells nothing of its size, so the whole stack does.
+            bound = min(row_of_load.capacity, 1000.0 * max(model.mass, drawn.initial_mass), 1e9)
             yield _Change(pointer=pointer, now=model.mass, bound=bound, words=f"load {model.name} of stage {stage + 1}")
     for index, payload in enumerate(drawn.design.vehicle.payloads):
         if isinstance(payload.mass, float) and payload.mass > 0.0:
@@ -347,6 +348,11 @@ def _left_out(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]
         legs = value_at(drawn.design, container)
         value = [leg for index, leg in enumerate(legs) if index != finding.leg]
         words = "no single number mends this; the branch without the leg"
-    again = None if value == [] else bench.draw(container, value, with_slack=True)
+    if value == []:
+        # A branch needs a leg, so the only one is left to ask nothing.
+        words = "no single number mends this; the leg asking nothing"
+        yield from _tried(bench, finding, f"{pointer}/delta_v", (None, 0.0), words)
+        return
+    again = bench.draw(container, value, with_slack=True)
     if again is not None:
         yield _remedy(again, pointer, (None, None), words)
