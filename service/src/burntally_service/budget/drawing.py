@@ -9,7 +9,7 @@ from burntally.model.mission import Ascend
 from burntally.model.rules import Rules
 from burntally_service.bodies import Body, system_of
 from burntally_service.budget.lower import Lowered, lower
-from burntally_service.budget.plan import BranchPlan, Handoff, PlannedLeg, plan_branch
+from burntally_service.budget.plan import BranchPlan, Handoff, PlanMemo, PlannedLeg, plan_branch
 from burntally_service.budget.rules import resolve
 from burntally_service.kernels import tally_rows as rows
 from burntally_service.kernels.tally import tally
@@ -53,6 +53,7 @@ class Drawn:
     lowered: Lowered
     books: rows.Books
     lines: list[Line]
+    memo: PlanMemo
     slack: list[float | None]
 
     @property
@@ -85,7 +86,7 @@ class Drawn:
         return self.lowered.stages[stage].engines[place].name
 
 
-def draw(design: Design, *, with_slack: bool = True) -> Drawn:
+def draw(design: Design, *, with_slack: bool = True, memo: PlanMemo | None = None) -> Drawn:
     """Draw up the books of a design.
 
     A branch is planned once its parent's books tell where and when its part left, so the tally runs once more for each
@@ -97,6 +98,8 @@ def draw(design: Design, *, with_slack: bool = True) -> Drawn:
         The design.
     with_slack : bool
         Whether the slack of each leg is wanted.
+    memo : dict, optional
+        Plans of legs made for designs that share them; changed.
 
     Returns
     -------
@@ -112,8 +115,9 @@ def draw(design: Design, *, with_slack: bool = True) -> Drawn:
     bodies = system_of(design.mission.system)
     check_start(design.mission.start, bodies, pointer="/mission/start")
     plans: list[BranchPlan | None] = [None] * (len(design.mission.branches) + 1)
+    plans_made: PlanMemo = {} if memo is None else memo
     start = Handoff(location=design.mission.start, elapsed=0.0)
-    plans[0] = plan_branch(design, rules, branch=0, handoff=start, bodies=bodies)
+    plans[0] = plan_branch(design, rules, branch=0, handoff=start, bodies=bodies, memo=plans_made)
     while True:
         lowered = lower(design.vehicle, rules, plans)
         books, lines = _tallied(lowered)
@@ -121,7 +125,7 @@ def draw(design: Design, *, with_slack: bool = True) -> Drawn:
         if started is None:
             break
         branch, handoff = started
-        plans[branch] = plan_branch(design, rules, branch=branch, handoff=handoff, bodies=bodies)
+        plans[branch] = plan_branch(design, rules, branch=branch, handoff=handoff, bodies=bodies, memo=plans_made)
     return Drawn(
         design=design,
         rules=rules,
@@ -129,6 +133,7 @@ def draw(design: Design, *, with_slack: bool = True) -> Drawn:
         lowered=lowered,
         books=books,
         lines=lines,
+        memo=plans_made,
         slack=_slack(lowered, books) if with_slack else [],
     )
 
@@ -188,7 +193,7 @@ def _slack(lowered: Lowered, books: rows.Books) -> list[float | None]:
     """Slack by leg, then by branch for its reserve; none in a branch that owes."""
     tables = lowered.tables
     legs, stages, branches = len(tables.legs), len(tables.stages), len(tables.branches)
-    walk = [[0.0] * (legs + branches), *([0.0] * stages for _ in range(4)), [-1.0]]
+    walk = [[0.0] * (legs + branches), *([0.0] * stages for _ in range(4)), [-1.0] * 5]
     slacks(tables, books, walk)
     found: list[float | None] = [None] * (legs + branches)
     scratch = None

@@ -11,7 +11,13 @@ from burntally_service.budget.rules import no_rule, rule_for
 from burntally_service.legs.plan import plan_leg
 from burntally_service.legs.planned import Clock, LegPlan
 
-__all__ = ["OPEN_ACCOUNT", "BranchPlan", "Handoff", "PlannedLeg", "category_of", "is_quiet", "plan_branch"]
+__all__ = ["OPEN_ACCOUNT", "BranchPlan", "Handoff", "PlanMemo", "PlannedLeg", "category_of", "is_quiet", "plan_branch"]
+
+PlanMemo = dict[tuple[int, Location | None, float, str | None], tuple[Leg, LegPlan]]
+"""Plans by the identity of the leg and where and when it starts; the leg is kept, so that its identity is not reused.
+
+A design that is changed in one field shares all other legs, and its copies are drawn up many times for remedies.
+"""
 
 OPEN_ACCOUNT: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
@@ -92,6 +98,7 @@ def plan_branch(
     branch: int,
     handoff: Handoff,
     bodies: Mapping[str, Body],
+    memo: PlanMemo,
 ) -> BranchPlan:
     """Plan every leg of a branch, each from where the one before it ends.
 
@@ -107,6 +114,8 @@ def plan_branch(
         Where and when the branch starts.
     bodies : mapping of str to Body
         The mission's bodies.
+    memo : dict
+        Plans made before of the same legs from the same places; changed.
 
     Returns
     -------
@@ -122,8 +131,11 @@ def plan_branch(
     planned: list[PlannedLeg] = []
     for index, leg in enumerate(legs):
         pointer = f"{base}/legs/{index}"
-        clock = Clock(elapsed=elapsed, epoch=mission.epoch)
-        plan = plan_leg(leg, location, bodies=bodies, clock=clock, pointer=pointer)
+        key = (id(leg), location, elapsed, mission.epoch)
+        if key not in memo:
+            clock = Clock(elapsed=elapsed, epoch=mission.epoch)
+            memo[key] = leg, plan_leg(leg, location, bodies=bodies, clock=clock, pointer=pointer)
+        plan = memo[key][1]
         category = category_of(leg)
         rule_index = -1 if category is None else rule_for(category, rules)
         row = PlannedLeg(

@@ -2,7 +2,7 @@
 
 import math
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 from msgspec import structs
 
@@ -12,7 +12,7 @@ from burntally.model.errors import BurntallyError
 from burntally_service.budget.drawing import Drawn, draw
 from burntally_service.budget.findings import findings_of
 from burntally_service.budget.leg_books import margin_of
-from burntally_service.budget.plan import PlannedLeg
+from burntally_service.budget.plan import PlanMemo, PlannedLeg
 from burntally_service.budget.pointing import value_at, with_value
 
 __all__ = ["with_remedies"]
@@ -27,7 +27,7 @@ _RESERVE = -1
 
 _MOST_TOLD = 3
 _MOST_TRIES = 40
-_MOST_STEPS_TALLIED = 60_000
+_MOST_STEPS_TALLIED = 30_000
 """Work that the search for remedies may do, in steps of a plan tallied: about a second at worst."""
 
 _SIGNIFICANT = 4
@@ -49,9 +49,9 @@ class _Bench:
     """Runs changed designs, within a bound of work."""
 
     design: Design
+    memo: PlanMemo
     steps: int
     spent: int = 0
-    cache: dict[tuple[str, float], float] = field(default_factory=dict)
 
     def draw(self, pointer: str, value: object, *, with_slack: bool = False) -> Drawn | None:
         """Draw up the design with one field changed; None if it cannot be computed, or the work is used up."""
@@ -59,7 +59,7 @@ class _Bench:
         if self.spent > _MOST_STEPS_TALLIED:
             return None
         try:
-            return draw(with_value(self.design, pointer, value), with_slack=with_slack)
+            return draw(with_value(self.design, pointer, value), with_slack=with_slack, memo=self.memo)
         except BurntallyError:
             return None
 
@@ -84,24 +84,21 @@ def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
     """
     if not any(finding.code in _SHORT for finding in findings):
         return findings
-    bench = _Bench(drawn.design, len(drawn.lowered.tables.steps))
+    bench = _Bench(drawn.design, drawn.memo, len(drawn.lowered.tables.steps))
     by_branch: dict[str, list[Remedy]] = {}
     mended: list[Finding] = []
     for finding in findings:
         if finding.code not in _SHORT:
             mended.append(finding)
             continue
-        remedies: list[Remedy] = []
+        remedies = list(_attempts(drawn, finding, bench, _AT_ONCE))
         if finding.code in _OWING and finding.branch is not None:
             if finding.branch not in by_branch:
                 by_branch[finding.branch] = _owed_remedies(drawn, finding.branch, None, bench)
-            leg = _RESERVE if finding.leg is None else finding.leg
-            remedies += by_branch[finding.branch] or _owed_remedies(drawn, finding.branch, leg, bench)
-        own = list(_own_remedies(drawn, finding, bench))
-        # To ask nothing at all is told only where nothing else helps.
-        remedies = [*(remedy for remedy in own if remedy.to != 0.0), *remedies] or own
-        if not remedies and finding.code in _OWING:
-            remedies = list(_left_out(drawn, finding, bench))
+            remedies += by_branch[finding.branch]
+        # To ask or to hold less is told only where nothing else helps, and to leave something out last of all.
+        remedies = remedies or list(_attempts(drawn, finding, bench, _ELSE)) or _for_itself(drawn, finding, bench)
+        remedies = remedies or list(_left_out(drawn, finding, bench))
         mended.append(structs.replace(finding, remedies=remedies[:_MOST_TOLD]))
     return mended
 
@@ -222,20 +219,19 @@ def _remedy(again: Drawn, pointer: str, values: tuple[object, object], message: 
     return Remedy(pointer=pointer, from_=values[0], to=values[1], margin=margin, message=message)  # type: ignore[arg-type]
 
 
-def _own_remedies(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
+def _attempts(
+    drawn: Drawn, finding: Finding, bench: _Bench, attempts: dict[str, tuple[_Attempt, ...]]
+) -> Iterator[Remedy]:
     """Changes of the field at fault itself that make one finding go."""
-    tries: dict[str, tuple[_Attempt, ...]] = {
-        "leg-unpaid": (_less_asked,),
-        "payer-gone": (_open_account, _less_asked),
-        "payer-inert": (_open_account, _less_asked),
-        "payer-dry": (_open_account, _less_asked),
-        "ignitions-exceeded": (_more_ignitions, _open_account, _less_asked),
-        "reserve-unpaid": (_less_held,),
-        "release-short": (_what_is_there,),
-        "overfilled": (_what_fits,),
-    }
-    for attempt in tries.get(finding.code, ()):
+    for attempt in attempts.get(finding.code, ()):
         yield from attempt(drawn, finding, bench)
+
+
+def _for_itself(drawn: Drawn, finding: Finding, bench: _Bench) -> list[Remedy]:
+    """Changes that let one leg be paid, or the reserve, in a branch that no single change mends."""
+    if finding.code not in _OWING or finding.branch is None:
+        return []
+    return _owed_remedies(drawn, finding.branch, _RESERVE if finding.leg is None else finding.leg, bench)
 
 
 def _is_mended(again: Drawn, finding: Finding) -> bool:
@@ -325,12 +321,13 @@ def _less_held(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy
 
 def _least_tried(finding: Finding, change: _Change, bench: _Bench) -> Iterator[Remedy]:
     """Find the least change of one field that mends a finding."""
+    name, leg = finding.branch or "", _RESERVE if finding.leg is None else finding.leg
 
-    def is_short(value: float) -> float:
+    def owed(value: float) -> float:
         again = bench.draw(change.pointer, value)
-        return math.inf if again is None else float(not _is_mended(again, finding))
+        return math.inf if again is None else _owed(again, name, leg)
 
-    value = _least_change(change, is_short)
+    value = _least_change(change, owed)
     if value is not None:
         remedy = _checked(bench, change, value, lambda again: _is_mended(again, finding))
         if remedy is not None:
@@ -339,6 +336,8 @@ def _least_tried(finding: Finding, change: _Change, bench: _Bench) -> Iterator[R
 
 def _left_out(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
     """Leave a leg or a reserve out, where no single number mends what several faults cause together."""
+    if finding.code not in _OWING:
+        return
     pointer = finding.pointer
     words = "no single number mends this; the branch without the reserve"
     container, value = pointer, None
@@ -356,3 +355,24 @@ def _left_out(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]
     again = bench.draw(container, value, with_slack=True)
     if again is not None:
         yield _remedy(again, pointer, (None, None), words)
+
+
+_AT_ONCE: dict[str, tuple[_Attempt, ...]] = {
+    "payer-gone": (_open_account,),
+    "payer-inert": (_open_account,),
+    "payer-dry": (_open_account,),
+    "ignitions-exceeded": (_more_ignitions, _open_account),
+    "release-short": (_what_is_there,),
+    "overfilled": (_what_fits,),
+}
+"""Changes that cost a run or two."""
+
+_ELSE: dict[str, tuple[_Attempt, ...]] = {
+    "leg-unpaid": (_less_asked,),
+    "payer-gone": (_less_asked,),
+    "payer-inert": (_less_asked,),
+    "payer-dry": (_less_asked,),
+    "ignitions-exceeded": (_less_asked,),
+    "reserve-unpaid": (_less_held,),
+}
+"""Changes that give something up."""

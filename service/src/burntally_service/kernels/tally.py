@@ -2,10 +2,11 @@
 
 import math
 
+from burntally_service.kernels.constants import G0
 from burntally_service.kernels.tally_books import DRY_FRACTION, load_up
 from burntally_service.kernels.tally_burns import NOTHING_OWED, pay
 from burntally_service.kernels.tally_exchange import exchange
-from burntally_service.kernels.tally_flow import light_flow, spare_of, write_line
+from burntally_service.kernels.tally_flow import write_line
 from burntally_service.kernels.tally_rows import (
     ADD_AT,
     ADDITION,
@@ -26,11 +27,14 @@ from burntally_service.kernels.tally_rows import (
     Books,
     Tables,
 )
+from burntally_service.kernels.tally_spare import note_spare
 from burntally_service.kernels.tally_stack import cause_of
 
 __all__ = ["tally"]
 
 SECONDS_PER_DAY = 86400.0
+SLOWEST_EXHAUST = G0
+"""Exhaust speed at the contract's least specific impulse, 1 s [m/s]."""
 
 
 def tally(tables: Tables, books: Books) -> None:
@@ -126,7 +130,7 @@ def _end(tables: Tables, books: Books, leg: int) -> None:
     books.clock_after[leg] = books.branch_clock[branch]
     books.line_end[leg] = books.count[LINES]
     if row.charged and books.count[ROOM] > 0:
-        _note_spare(tables, books, leg, leg)
+        note_spare(tables, books, leg, leg)
     if row.reserves:
         _hold_reserve(tables, books, leg)
 
@@ -178,65 +182,7 @@ def _hold_reserve(tables: Tables, books: Books, leg: int) -> None:
     if books.count[ADD_AT] == mark:
         _add(tables, books, leg)
     if amount > 0.0 and books.count[ROOM] > 0:
-        _note_spare(tables, books, leg, mark)
-
-
-def _note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
-    """Note which stage of a leg's account would pay an addition here, and how much it has (rule M).
-
-    Only books with room for lines are walked for slack, so others are spared this.
-    """
-    stages = tables.n_stages
-    row = tables.legs[leg]
-    base = row.account * stages
-    below = False
-    for position in range(stages):
-        stage = books.order[position]
-        if books.where[stage] != row.branch:
-            continue
-        burner = tables.burner_of[base + stage]
-        if burner < 0:
-            below = True
-            continue
-        if books.spare_stage[mark] >= 0:
-            # Only whether another stage could go on matters, and most accounts have none to ask.
-            if _can_pay(tables, books, burner):
-                books.spare_more[mark] = 1
-                return
-            continue
-        thrust, mdot, mask = light_flow(tables, books, burner)
-        if mask == 0:
-            below = True
-            continue
-        time, first_dry = spare_of(tables, books, stage)
-        books.spare[mark] = mdot * time
-        books.spare_speed[mark] = thrust / mdot
-        books.spare_mass[mark] = books.branch_mass[row.branch]
-        books.spare_stage[mark] = stage
-        books.spare_mask[mark] = mask
-        if below or _burns_on(tables, burner, first_dry):
-            books.spare_more[mark] = 1
-
-
-def _can_pay(tables: Tables, books: Books, burner: int) -> bool:
-    """Tell whether any engine of a burner can burn."""
-    _, _, mask = light_flow(tables, books, burner)
-    return mask != 0
-
-
-def _burns_on(tables: Tables, burner: int, dry: int) -> bool:
-    """Tell whether some engine of a burner goes on when one load is dry."""
-    row = tables.burners[burner]
-    if row.end_lit - row.first_lit == 1:
-        return False
-    for place in range(row.first_lit, row.end_lit):
-        fitted = tables.engines[tables.lit[place]]
-        fed_by_dry = False
-        for feed in range(fitted.first_feed, fitted.end_feed):
-            fed_by_dry = fed_by_dry or tables.feeds[feed].load == dry
-        if not fed_by_dry:
-            return True
-    return False
+        note_spare(tables, books, leg, mark)
 
 
 def _coast(tables: Tables, books: Books, leg: int, duration: float) -> None:
@@ -266,17 +212,23 @@ def _draw(tables: Tables, books: Books, leg: int, amount: float) -> None:
     mass = books.branch_mass[row.branch]
     if owed > 0.0:
         speed = _speed_of_lowest(tables, books, row.account)
-        delta_v = speed * math.log(mass / max(mass - owed, DRY_FRACTION * mass))
+        left = mass - owed
+        # More than there is to draw on, or nothing aboard at all, counts as a stack burned to dryness.
+        ratio = mass / left if left > DRY_FRACTION * mass else 1.0 / DRY_FRACTION
+        delta_v = speed * math.log(ratio)
         if delta_v >= NOTHING_OWED:
             books.cause[leg] = cause_of(tables, books, leg)
             books.owed[leg] += delta_v
             books.branch_owed[row.branch] += delta_v
     if books.count[ROOM] > 0:
-        _note_spare(tables, books, leg, leg)
+        note_spare(tables, books, leg, leg)
 
 
 def _speed_of_lowest(tables: Tables, books: Books, account: int) -> float:
-    """Mixed exhaust speed of an account's engines on its lowest stage, attached or not; 0 without engines."""
+    """Mixed exhaust speed of an account's engines on its lowest stage, attached or not.
+
+    An account without engines draws nothing and still owes, so it counts as the slowest engine that there may be.
+    """
     stages = tables.n_stages
     for stage in range(stages):
         burner = tables.burner_of[account * stages + stage]
@@ -289,4 +241,4 @@ def _speed_of_lowest(tables: Tables, books: Books, account: int) -> float:
                 thrust += tables.engines[engine].count * tables.engines[engine].thrust
                 mdot += books.engine_flow[engine]
             return thrust / mdot
-    return 0.0
+    return SLOWEST_EXHAUST

@@ -243,3 +243,4 @@ def _wipe_legs(tables: Tables, books: Books) -> None:
         books.cause[mark] = 0
         books.spare_stage[mark] = -1
         books.spare_more[mark] = 0
+        books.next_stage[mark] = -1

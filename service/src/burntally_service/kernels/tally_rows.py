@@ -77,6 +77,11 @@ MASK: Final = 8
 SPARE: Final = 9
 LINE_WIDTH: Final = 10
 
+# What could go on after the payer of a mark: nothing, the next stage alone, or more than the books can tell.
+NO_MORE: Final = 0
+NEXT_STAGE: Final = 1
+UNCLEAR: Final = 2
+
 # Why something is owed.
 PAID: Final = 0
 GONE: Final = 1
@@ -302,6 +307,11 @@ class Books(Struct, frozen=True):
     spare_stage: list[int]
     spare_mask: list[int]
     spare_more: list[int]
+    next_stage: list[int]
+    next_mask: list[int]
+    next_spare: list[float]
+    next_speed: list[float]
+    next_mass: list[float]
     lines: list[float]
     count: list[int]
     added: list[float]
@@ -362,6 +372,11 @@ BLANK: Final[dict[str, tuple[str, float]]] = {
     "spare_stage": ("marks", -1),
     "spare_mask": ("marks", 0),
     "spare_more": ("marks", 0),
+    "next_stage": ("marks", -1),
+    "next_mask": ("marks", 0),
+    "next_spare": ("marks", 0.0),
+    "next_speed": ("marks", 0.0),
+    "next_mass": ("marks", 0.0),
     "lines": ("lines", 0.0),
     "count": ("count", 0),
     "added": ("added", 0.0),

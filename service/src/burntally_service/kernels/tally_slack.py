@@ -15,6 +15,7 @@ from burntally_service.kernels.tally_rows import (
     DELTA_V,
     KG,
     KIND,
+    LEG,
     LINE_BOILED,
     LINE_BURN,
     LINE_DOCKED,
@@ -27,8 +28,10 @@ from burntally_service.kernels.tally_rows import (
     LINES,
     MASK,
     MASS,
+    NO_MORE,
     PART,
     SPARE,
+    UNCLEAR,
     Books,
     Tables,
 )
@@ -47,9 +50,19 @@ TOLERANCE: Final = 1e-10
 MOST_TRIES: Final = 200
 """The search halves its bracket at worst, and a bracket of 1e6 m/s needs 54 halvings."""
 
-_NONE: Final = 0.0
-_KNOWN: Final = 1.0
-_MIXED: Final = 2.0
+# Rows of the walk: slack by mark, then by stage its state, reach, mask and tail, then the draw walked last.
+STATE: Final = 1
+REACH: Final = 2
+MASKS: Final = 3
+TAIL: Final = 4
+LAST: Final = 5
+
+# States of a stage on the walk back: it draws no more; it draws no more while another does; it draws; it draws
+# together with others, so that its reach is no longer its own.
+NOTHING: Final = 0.0
+BUSY: Final = 1.0
+KNOWN: Final = 2.0
+MIXED: Final = 3.0
 
 
 def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
@@ -58,7 +71,8 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     .. math:: s = c \ln \frac{m}{m - a}
 
     with a the mass that the stage could lose there: what it has to spare after its last draw, times the mass ratios of
-    the draws in between.
+    the draws in between. Where another stage would go on after it, and no mass moves in between but by burns, the same
+    of that stage is added: its tail.
 
     Parameters
     ----------
@@ -67,8 +81,8 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     books : Books
         Its books, with all lines.
     walk : list of lists of float
-        Scratch of six rows: slack by mark [m/s], then state, reach [kg], mask and handover by stage, then the stage
-        that drew last (-1 at first); changed.
+        Scratch of six rows: slack by mark [m/s], then state, reach [kg], mask and tail [m/s] by stage, then five cells
+        about the draw walked last, the first of them -1; changed.
 
     Returns
     -------
@@ -85,7 +99,7 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> from burntally_service.kernels.tally_rows import NO_TABLES
     >>> empty = NO_TABLES
-    >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], [], [-1.0]])
+    >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], [], [-1.0] * 5])
     """
     legs = tables.n_legs
     end = books.count[LINES]
@@ -111,18 +125,40 @@ def _slack_at(books: Books, walk: list[list[float]], mark: int) -> float:
     stage = books.spare_stage[mark]
     if stage < 0:
         return 0.0
+    state = walk[STATE][stage]
     reach = books.spare[mark]
-    more = books.spare_more[mark]
-    state = walk[1][stage]
-    if state == _MIXED or (state == _KNOWN and walk[3][stage] != books.spare_mask[mark]):
+    if state == MIXED or (state == KNOWN and walk[MASKS][stage] != books.spare_mask[mark]):
         return SEARCH
-    if state == _KNOWN and walk[2][stage] <= reach:
-        reach = walk[2][stage]
-        more = int(walk[4][stage])
-    if more:
+    if state == KNOWN and walk[REACH][stage] <= reach:
+        reach = walk[REACH][stage]
+        tail = walk[TAIL][stage]
+    else:
+        tail = _tail_after(books, walk, mark, state)
+    if tail < 0.0:
         return SEARCH
     mass = books.spare_mass[mark]
-    return books.spare_speed[mark] * math.log(mass / (mass - reach))
+    return books.spare_speed[mark] * math.log(mass / (mass - reach)) + tail
+
+
+def _tail_after(books: Books, walk: list[list[float]], mark: int, state: float) -> float:
+    """Delta-v that the next stage could add if the payer of a mark ran dry and dropped there; -1 if unclear."""
+    if books.spare_more[mark] == NO_MORE:
+        return 0.0
+    if books.spare_more[mark] == UNCLEAR or state == BUSY:
+        return SEARCH
+    stage = books.next_stage[mark]
+    following = walk[STATE][stage]
+    reach = books.next_spare[mark]
+    tail = 0.0
+    if following == MIXED or (following == KNOWN and walk[MASKS][stage] != books.next_mask[mark]):
+        return SEARCH
+    if following == KNOWN and walk[REACH][stage] <= reach:
+        reach = walk[REACH][stage]
+        tail = walk[TAIL][stage]
+    if tail < 0.0:
+        return SEARCH
+    mass = books.next_mass[mark]
+    return books.next_speed[mark] * math.log(mass / (mass - reach)) + tail
 
 
 def _walk_lines(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int, int]) -> None:
@@ -131,61 +167,119 @@ def _walk_lines(tables: Tables, books: Books, walk: list[list[float]], at: tuple
     for line in range(last, first - 1, -1):
         start = line * LINE_WIDTH
         kind = int(books.lines[start + KIND])
-        if kind <= LINE_DRAW:
+        if kind == LINE_BURN:
             _walk_draw(tables, books, walk, (start, mark))
-        elif kind != LINE_IGNITION:
+        elif kind != LINE_IGNITION or books.lines[start + KG] > 0.0:
             _walk_event(tables, books, walk, start)
+            if kind == LINE_DRAW:
+                _walk_draw(tables, books, walk, (start, mark))
 
 
 def _walk_event(tables: Tables, books: Books, walk: list[list[float]], start: int) -> None:
-    """Forget, or stop trusting, what is known of a stage when its loads or its branch change."""
+    """Stop trusting, or forget, what is known of stages where mass moves without a burn."""
     kind = int(books.lines[start + KIND])
     part = int(books.lines[start + PART])
+    # What is handed over to a later stage depends on the mass at which that happens.
+    for stage in range(tables.n_stages):
+        if walk[TAIL][stage] > 0.0:
+            walk[TAIL][stage] = SEARCH
+        if kind == LINE_DOCKED:
+            walk[STATE][stage] = MIXED
     if kind == LINE_SEPARATION:
-        walk[1][part] = _NONE
-    elif kind == LINE_DOCKED:
-        for stage in range(tables.n_stages):
-            walk[1][stage] = _MIXED
+        walk[STATE][part] = NOTHING
+        walk[TAIL][part] = 0.0
     elif kind == LINE_TAKEN:
-        if tables.loads[part].capacity < math.inf:
-            walk[1][tables.loads[part].stage] = _MIXED
+        _walk_filling(tables, books, walk, start)
     elif kind == LINE_BOILED:
         if books.lines[start + MASK] > 0.0:
-            walk[1][tables.loads[part].stage] = _MIXED
+            walk[STATE][tables.loads[part].stage] = MIXED
     elif kind == LINE_HANDED and books.lines[start + KG] < books.lines[start + DELTA_V]:
-        walk[1][tables.loads[part].stage] = _MIXED
+        walk[STATE][tables.loads[part].stage] = MIXED
+
+
+def _walk_filling(tables: Tables, books: Books, walk: list[list[float]], start: int) -> None:
+    """Forget what a stage owes to later draws where its tank is filled: what was lost before is made up for."""
+    row = tables.loads[int(books.lines[start + PART])]
+    if books.lines[start + DELTA_V] + books.lines[start + KG] < row.capacity:
+        return
+    stage = tables.stages[row.stage]
+    alone = stage.end_load - stage.first_load == 1
+    walk[STATE][row.stage] = NOTHING if alone else MIXED
+    walk[TAIL][row.stage] = 0.0
 
 
 def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int]) -> None:
     """Carry the mass that a stage could lose from after a draw to before it."""
     start, mark = at
-    drawer = tables.burners[int(books.lines[start + PART])].stage
-    mask = books.lines[start + MASK]
-    spare = books.lines[start + SPARE]
-    if drawer != int(walk[5][0]):
-        # What another stage draws in between depends on the mass that this one has lost.
-        for stage in range(tables.n_stages):
-            if stage != drawer and walk[1][stage] == _KNOWN:
-                walk[1][stage] = _MIXED
-        walk[5][0] = float(drawer)
-    if walk[1][drawer] == _KNOWN and walk[3][drawer] != mask:
-        walk[1][drawer] = _MIXED
-    if walk[1][drawer] == _NONE or (walk[1][drawer] == _KNOWN and spare < walk[2][drawer]):
-        walk[1][drawer] = _KNOWN
-        walk[2][drawer] = spare
-        walk[3][drawer] = mask
-        walk[4][drawer] = _hands_over(books, mark, drawer, int(mask))
-    if int(books.lines[start + KIND]) == LINE_BURN:
-        mass = books.lines[start + MASS]
-        walk[2][drawer] *= mass / (mass - books.lines[start + KG])
+    lines = books.lines
+    drawer = tables.burners[int(lines[start + PART])].stage
+    mask = lines[start + MASK]
+    spare = lines[start + SPARE]
+    state = walk[STATE][drawer]
+    if state == KNOWN and walk[MASKS][drawer] != mask:
+        state = MIXED
+        walk[STATE][drawer] = MIXED
+    if state <= BUSY or (state == KNOWN and spare < walk[REACH][drawer]):
+        walk[STATE][drawer] = KNOWN
+        walk[REACH][drawer] = spare
+        walk[MASKS][drawer] = mask
+        walk[TAIL][drawer] = _tail_of(tables, books, walk, (start, mark, drawer, state))
+    if drawer != int(walk[LAST][0]):
+        _mix_others(tables, walk, drawer)
+    mass = lines[start + MASS]
+    if int(lines[start + KIND]) == LINE_BURN:
+        walk[REACH][drawer] *= mass / (mass - lines[start + KG])
+    last = walk[LAST]
+    last[0] = float(drawer)
+    last[1] = lines[start + LEG]
+    last[2] = mass
+    last[3] = walk[REACH][drawer] if walk[STATE][drawer] == KNOWN else SEARCH
+    last[4] = walk[TAIL][drawer]
 
 
-def _hands_over(books: Books, mark: int, stage: int, mask: int) -> float:
-    """Tell (1) whether another stage or engine would go on if this one ran dry in a leg."""
+def _mix_others(tables: Tables, walk: list[list[float]], drawer: int) -> None:
+    """Mark the other stages: what another one draws in between depends on the mass that they have lost."""
+    for stage in range(tables.n_stages):
+        if stage != drawer:
+            if walk[STATE][stage] == KNOWN:
+                walk[STATE][stage] = MIXED
+            elif walk[STATE][stage] == NOTHING:
+                walk[STATE][stage] = BUSY
+
+
+def _tail_of(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int, int, float]) -> float:
+    """Delta-v that later stages could add if a stage ran dry in a draw; -1 if that is not clear."""
+    start, mark, drawer, state = at
+    last = walk[LAST]
+    following = int(last[0])
+    lines = books.lines
+    if lines[start + SPARE] == 0.0 and following not in (-1, drawer) and last[1] == lines[start + LEG]:
+        # Another stage did go on, right here, and its own lines have just been walked.
+        known = last[3] >= 0.0 and last[4] >= 0.0 and books.spare_stage[mark] == following
+        if not known or not _is_plain(tables, books, following, drawer):
+            return SEARCH
+        return books.spare_speed[mark] * math.log(last[2] / (last[2] - last[3])) + last[4]
     if books.spare_stage[mark] < 0:
         return 0.0
-    same = books.spare_stage[mark] == stage and books.spare_mask[mark] == mask
-    return float(books.spare_more[mark]) if same else 1.0
+    if books.spare_stage[mark] != drawer or books.spare_mask[mark] != int(lines[start + MASK]):
+        return SEARCH
+    tail = _tail_after(books, walk, mark, state)
+    if tail > 0.0 and not _is_plain(tables, books, books.next_stage[mark], drawer):
+        return SEARCH
+    return tail
+
+
+def _is_plain(tables: Tables, books: Books, stage: int, before: int) -> bool:
+    """Tell whether a stage may be lit wherever the one before it was, at no cost and within its ignitions."""
+    more = 0.0
+    for engine in range(tables.stages[before].first_engine, tables.stages[before].end_engine):
+        more = max(more, books.used[engine])
+    row = tables.stages[stage]
+    for engine in range(row.first_engine, row.end_engine):
+        fitted = tables.engines[engine]
+        if fitted.loss_per_ignition > 0.0 or books.used[engine] + more > fitted.max_ignitions:
+            return False
+    return True
 
 
 def owed_with(tables: Tables, scratch: Books, mark: int, added: float) -> float:
