@@ -2,7 +2,8 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import NamedTuple
+
+from msgspec import Struct
 
 from burntally.model.design import Design
 from burntally.model.mission import Ascend
@@ -22,7 +23,7 @@ __all__ = ["Drawn", "Line", "draw"]
 _ROOM_PER_STEP = 4
 
 
-class Line(NamedTuple):
+class Line(Struct, frozen=True, gc=False):
     """One line of the ledger, as the tally wrote it."""
 
     kind: int
@@ -166,7 +167,7 @@ def _newly_started(design: Design, lowered: Lowered, lines: list[Line]) -> tuple
     while place < len(lines):
         end = place + 1
         if lines[place].kind == rows.LINE_SEPARATION:
-            while end < len(lines) and lines[end][:2] == lines[place][:2]:
+            while end < len(lines) and lines[end].kind == lines[place].kind and lines[end].leg == lines[place].leg:
                 end += 1
             group = {lowered.stages[line.part].name for line in lines[place:end]}
             for index, branch in enumerate(design.mission.branches):

@@ -1,7 +1,8 @@
 """The plan: what each leg asks, where and when, branch by branch; the vehicle is not seen here."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+
+from msgspec import Struct
 
 from burntally.model.design import Design
 from burntally.model.mission import Ascend, Branch, ChargedLeg, Coast, Leg, Location
@@ -22,8 +23,7 @@ A design that is changed in one field shares all other legs, and its copies are 
 OPEN_ACCOUNT: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Handoff:
+class Handoff(Struct, frozen=True, kw_only=True):
     """Where and when a branch starts: how the parent's books say that its part left."""
 
     location: Location | None
@@ -31,9 +31,8 @@ class Handoff:
     stated_ascent: bool = False
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class PlannedLeg:
-    """A leg with its plan, its place in the design, and the rule that it takes."""
+class PlannedLeg(Struct, frozen=True, kw_only=True):
+    """A leg with its plan, its place in the design, the rule that it takes, and whether a delta-v is charged."""
 
     leg: Leg
     index: int
@@ -44,14 +43,7 @@ class PlannedLeg:
     category: str | None
     rule: Contingency
     rule_index: int
-
-    @property
-    def charged(self) -> bool:
-        """Whether the leg is charged a delta-v: a manoeuvre, or what the rule adds to one that costs nothing."""
-        if not self.plan.manoeuvres:
-            return False
-        on_leg = self.rule.floor if self.rule.floor_on == "leg" else 0.0
-        return self.plan.delta_v > 0.0 or on_leg > 0.0 or self.rule.fixed > 0.0
+    charged: bool
 
     @property
     def kilograms(self) -> float:
@@ -66,8 +58,7 @@ class PlannedLeg:
         return OPEN_ACCOUNT
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class BranchPlan:
+class BranchPlan(Struct, frozen=True, kw_only=True):
     """A branch with its planned legs; `part` is empty for the main one."""
 
     name: str
@@ -82,6 +73,14 @@ class BranchPlan:
     def end(self) -> Location | None:
         """Where the branch ends."""
         return self.legs[-1].plan.end if self.legs else None
+
+
+def _is_charged(plan: LegPlan, rule: Contingency) -> bool:
+    """Whether a leg is charged a delta-v: a manoeuvre, or what the rule adds to one that costs nothing."""
+    if not plan.manoeuvres:
+        return False
+    on_leg = rule.floor if rule.floor_on == "leg" else 0.0
+    return plan.delta_v > 0.0 or on_leg > 0.0 or rule.fixed > 0.0
 
 
 def category_of(leg: Leg) -> str | None:
@@ -138,6 +137,7 @@ def plan_branch(
         plan = memo[key][1]
         category = category_of(leg)
         rule_index = -1 if category is None else rule_for(category, rules)
+        rule = no_rule() if rule_index < 0 else rules.contingency[rule_index]
         row = PlannedLeg(
             leg=leg,
             index=index,
@@ -146,8 +146,9 @@ def plan_branch(
             elapsed=elapsed,
             plan=plan,
             category=category,
-            rule=no_rule() if rule_index < 0 else rules.contingency[rule_index],
+            rule=rule,
             rule_index=rule_index,
+            charged=_is_charged(plan, rule),
         )
         planned.append(row)
         location, elapsed = plan.end, elapsed + plan.duration

@@ -9,6 +9,8 @@ from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, replace
 from itertools import product
 
+from msgspec import structs
+
 from burntally_service.kernels.ellipses import apse_turn, coasting_time
 from burntally_service.kernels.half_turns import Arc, Impulse
 from burntally_service.kernels.manoeuvres import combined_burn
@@ -110,7 +112,7 @@ def _fly_base(errand: Errand, base: Path, flight: _Flight) -> None:
     if not base.steps:
         return
     nu_i, nu_f, apse = _line_of(errand, base, flight)
-    first = replace(base.steps[0], arc=flight.arc_to(nu_i))
+    first = structs.replace(base.steps[0], arc=flight.arc_to(nu_i))
     flight.steps.extend((first, *base.steps[1:]))
     flight.size, flight.apse, flight.nu = errand.final, apse, nu_f
 

@@ -6,7 +6,8 @@ the design stated, wherever the burns left them alone, so that no rounding creep
 
 import math
 from collections.abc import Mapping
-from dataclasses import dataclass
+
+from msgspec import Struct
 
 from burntally.model.errors import UncomputableError, Violation
 from burntally.model.mission import Hyperbola, Location, Orbit, OrbitLocation
@@ -30,8 +31,7 @@ _CIRCULAR = 1e-9
 _AT_APSIS = 1e-9
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Size:
+class Size(Struct, frozen=True, kw_only=True):
     """Size and form of an ellipse.
 
     Attributes

@@ -2,8 +2,9 @@
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
 from typing import Literal
+
+from msgspec import Struct, structs
 
 from burntally_service.kernels.half_turns import Arc, Impulse
 from burntally_service.legs.planned import PlannedManoeuvre
@@ -14,8 +15,7 @@ BURN_LEAST = 1e-9
 """A cheaper burn is rounding, and no burn [m/s]."""
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Step:
+class Step(Struct, frozen=True, kw_only=True):
     """One burn and the arc flown before it.
 
     Attributes
@@ -60,8 +60,7 @@ class Step:
         )
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Path:
+class Path(Struct, frozen=True, kw_only=True):
     """A way to fly a transfer.
 
     Attributes
@@ -149,7 +148,7 @@ def _without_empty(steps: Sequence[Step]) -> tuple[Step, ...]:
     for step in steps:
         arc = _joined(pending, step.arc)
         if step.impulse.dv > BURN_LEAST:
-            kept.append(replace(step, arc=arc if kept else None))
+            kept.append(structs.replace(step, arc=arc if kept else None))
             pending = None
         else:
             pending = arc

@@ -2,7 +2,8 @@
 
 import math
 from collections.abc import Mapping
-from dataclasses import replace
+
+from msgspec import structs
 
 from burntally.model.mission import (
     Allowance,
@@ -56,7 +57,7 @@ def plan_leg(
     """
     plan = _plan(leg, start, bodies, clock, pointer)
     note = _entering(leg, start, bodies)
-    return plan if note is None else replace(plan, findings=(*plan.findings, note))
+    return plan if note is None else structs.replace(plan, findings=(*plan.findings, note))
 
 
 def _plan(leg: Leg, start: Location | None, bodies: Mapping[str, Body], clock: Clock, pointer: str) -> LegPlan:

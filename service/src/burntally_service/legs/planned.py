@@ -1,7 +1,8 @@
 """What planning a leg yields: manoeuvres, where the leg ends, and what is wrong with it."""
 
-from dataclasses import dataclass
 from typing import Literal
+
+from msgspec import Struct
 
 from burntally.model.budget import Caution, StrategyCost
 from burntally.model.mission import Location
@@ -9,8 +10,7 @@ from burntally.model.mission import Location
 __all__ = ["Clock", "LegPlan", "PlanFinding", "PlannedManoeuvre", "unplanned"]
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Clock:
+class Clock(Struct, frozen=True, kw_only=True):
     """When a leg starts.
 
     Attributes
@@ -25,8 +25,7 @@ class Clock:
     epoch: str | None = None
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class PlannedManoeuvre:
+class PlannedManoeuvre(Struct, frozen=True, kw_only=True):
     """One ideal manoeuvre.
 
     Attributes
@@ -59,8 +58,7 @@ class PlannedManoeuvre:
     purpose: Literal["manoeuvre", "upkeep"] = "manoeuvre"
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class PlanFinding:
+class PlanFinding(Struct, frozen=True, kw_only=True):
     """Something that is wrong with a leg, or worth knowing.
 
     Attributes
@@ -84,8 +82,7 @@ class PlanFinding:
     unit: str | None = None
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class LegPlan:
+class LegPlan(Struct, frozen=True, kw_only=True):
     """What a leg asks, and where it ends.
 
     Attributes
