@@ -18,9 +18,14 @@ from burntally_service.kernels.tally_books import blank_books
 from burntally_service.kernels.tally_slack import slack_by_search, slacks
 from burntally_service.legs.orbit import check_start
 
-__all__ = ["Drawn", "Line", "draw"]
+__all__ = ["Drawn", "Line", "draw", "stage_pointer"]
 
 _ROOM_PER_STEP = 4
+
+
+def stage_pointer(stage: int) -> str:
+    """Where a stage stands in the design."""
+    return f"/vehicle/stages/{stage}"
 
 
 class Line(Struct, frozen=True, gc=False):
@@ -70,6 +75,16 @@ class Drawn:
     def legs_of(self, branch: int) -> list[tuple[int, PlannedLeg]]:
         """Legs of a branch with their index in the tables."""
         return [(leg, row) for leg, (of, row) in enumerate(self.lowered.legs) if of == branch and row is not None]
+
+    def branch_name(self, branch: int) -> str:
+        """Name of a branch that started."""
+        plan = self.branches[branch]
+        return plan.name if plan else ""
+
+    def load_pointer(self, load: int) -> str:
+        """Where a load stands in the design."""
+        stage, place = self.lowered.loads[load]
+        return f"{stage_pointer(stage)}/propellants/{place}"
 
     def part_name(self, part: int) -> str:
         """Name of a stage, or of a payload counted after the stages."""

@@ -14,7 +14,7 @@ from burntally.model.budget import (
     ReserveBook,
     RuleUsed,
 )
-from burntally.model.mission import Land, Site
+from burntally.model.mission import Land, Site, Spiral
 from burntally.model.rules import Contingency
 from burntally_service.budget.drawing import Drawn, Line
 from burntally_service.budget.plan import BranchPlan, PlannedLeg
@@ -227,7 +227,7 @@ def _burn(drawn: Drawn, row: PlannedLeg, line: Line) -> Burn:
     return Burn(
         stage=drawn.part_name(stage),
         engines=[drawn.engine_name(engine) for engine in lit],
-        purpose=_PURPOSES[line.purpose],
+        purpose="manoeuvre" if isinstance(row.leg, Spiral) and line.purpose == rows.UPKEEP else _PURPOSES[line.purpose],
         delta_v=line.delta_v,
         propellant=line.kg,
         burn_time=line.kg / mdot,

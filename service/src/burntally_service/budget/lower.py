@@ -4,7 +4,7 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 
-from burntally.model.mission import Release, Separate, TakeOn
+from burntally.model.mission import Release, Separate, Spiral, TakeOn
 from burntally.model.rules import Rules
 from burntally.model.vehicle import Engine, MassList, Payload, Stage, Vehicle
 from burntally_service.budget.plan import OPEN_ACCOUNT, BranchPlan, PlannedLeg, is_quiet
@@ -218,10 +218,12 @@ def _lower_leg(draft: _Draft, branch: int, row: PlannedLeg, marks: tuple[bool, b
 def _lower_manoeuvres(draft: _Draft, leg: int, row: PlannedLeg) -> None:
     """Copy the manoeuvres of a leg, with the time that passes before each and after the last."""
     splits = getattr(row.leg, "splits", 1)
+    # Upkeep and low thrust need an ignition left and use none (P4).
+    unlit = isinstance(row.leg, Spiral)
     for manoeuvre in row.plan.manoeuvres:
         if manoeuvre.coast_before > 0.0:
             draft.steps.append(rows.StepRow(rows.COAST, leg, 0, manoeuvre.coast_before, 1, 0))
-        purpose = rows.UPKEEP if manoeuvre.purpose == "upkeep" else rows.MANOEUVRE
+        purpose = rows.UPKEEP if unlit or manoeuvre.purpose == "upkeep" else rows.MANOEUVRE
         count = 1 if purpose == rows.UPKEEP else splits
         draft.steps.append(rows.StepRow(rows.BURN, leg, 0, manoeuvre.delta_v, count, purpose))
     if row.plan.coast_after > 0.0:

@@ -85,11 +85,17 @@ def _note_next(tables: Tables, books: Books, at: tuple[int, int], by: tuple[int,
         return
     above = 0.0
     reached = False
+    adjoining = True
     for position in range(tables.n_stages):
         other = books.order[position]
         if reached and books.where[other] == branch:
+            adjoining = adjoining and (above > 0.0 or other == stage)
             above += stage_mass(tables, books, other)
         reached = reached or other == payer
+    if not adjoining:
+        # What stands between the two may drop with the payer, or keep it aboard.
+        books.spare_more[mark] = UNCLEAR
+        return
     books.spare_more[mark] = NEXT_STAGE
     books.next_stage[mark] = stage
     books.next_mask[mark] = mask
