@@ -75,7 +75,8 @@ def weights(budget: Budget) -> dict[str, float]:
 def tight(case: Case) -> float:
     """How far the last digit of the propellant may move the margin [m/s]."""
     exhaust_speed: float = case.inputs["isp_s"] * case.inputs["g0_m_per_s2"]
-    propellant, wet = case.expected["total_propellant_kg"], case.expected["wet_mass_kg"]
+    propellant: float = case.expected["total_propellant_kg"]
+    wet: float = case.expected["wet_mass_kg"]
     return exhaust_speed * case.tolerance["relative"] * propellant / (wet - propellant)
 
 

@@ -80,20 +80,9 @@ def _note_next(tables: Tables, books: Books, at: tuple[int, int], by: tuple[int,
     named_later = tables.last_named[branch * tables.n_stages + payer] > leg
     thrust, mdot, mask = light_flow(tables, books, burner)
     time, first_dry = spare_of(tables, books, stage)
-    if tables.stages[payer].by_leg or named_later or _burns_on(tables, burner, first_dry):
-        books.spare_more[mark] = UNCLEAR
-        return
-    above = 0.0
-    reached = False
-    adjoining = True
-    for position in range(tables.n_stages):
-        other = books.order[position]
-        if reached and books.where[other] == branch:
-            adjoining = adjoining and (above > 0.0 or other == stage)
-            above += stage_mass(tables, books, other)
-        reached = reached or other == payer
-    if not adjoining:
-        # What stands between the two may drop with the payer, or keep it aboard.
+    above, adjoining = _above(tables, books, branch, payer)
+    # What stands between the two may drop with the payer, or keep it aboard.
+    if tables.stages[payer].by_leg or named_later or adjoining != stage or _burns_on(tables, burner, first_dry):
         books.spare_more[mark] = UNCLEAR
         return
     books.spare_more[mark] = NEXT_STAGE
@@ -102,6 +91,21 @@ def _note_next(tables: Tables, books: Books, at: tuple[int, int], by: tuple[int,
     books.next_spare[mark] = mdot * time
     books.next_speed[mark] = thrust / mdot
     books.next_mass[mark] = above
+
+
+def _above(tables: Tables, books: Books, branch: int, stage: int) -> tuple[float, int]:
+    """Mass of all that stands above a stage in its branch [kg], and which stage stands right above it (-1: none)."""
+    mass = 0.0
+    adjoining = -1
+    reached = False
+    for position in range(tables.n_stages):
+        other = books.order[position]
+        if reached and books.where[other] == branch:
+            mass += stage_mass(tables, books, other)
+            if adjoining < 0:
+                adjoining = other
+        reached = reached or other == stage
+    return mass, adjoining
 
 
 def _burns_on(tables: Tables, burner: int, dry: int) -> bool:
