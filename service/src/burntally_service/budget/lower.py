@@ -238,23 +238,33 @@ def _lower_exchange(draft: _Draft, leg: int, row: PlannedLeg) -> None:
         for stage in sorted((draft.stage_index[name] for name in model.stages), reverse=True):
             draft.steps.append(rows.StepRow(rows.SEPARATE, leg, stage, 0.0, 1, 0))
     elif isinstance(model, Release):
-        if model.payload is not None:
-            mass = math.inf if model.mass is None else model.mass
-            payload = _payload(draft, model.payload)
-            draft.steps.append(rows.StepRow(rows.RELEASE_PAYLOAD, leg, payload, mass, 1, 0))
-        for move in model.propellants:
-            load = _load(draft, move.stage, move.load)
-            draft.steps.append(rows.StepRow(rows.RELEASE_PROPELLANT, leg, load, move.mass or 0.0, 1, 0))
+        _lower_release(draft, leg, model)
     elif isinstance(model, TakeOn):
-        if model.branch is not None and _docked(draft, row):
-            draft.steps.append(rows.StepRow(rows.DOCK, leg, _docked(draft, row), 0.0, 1, 0))
-        if model.payload is not None:
-            payload = _payload(draft, model.payload.name)
-            draft.steps.append(rows.StepRow(rows.TAKE_PAYLOAD, leg, payload, 0.0, 1, 0))
-        for move in model.propellants:
-            load = _load(draft, move.stage, move.load)
-            mass = math.inf if move.mass is None else move.mass
-            draft.steps.append(rows.StepRow(rows.TAKE_PROPELLANT, leg, load, mass, 1, 0))
+        _lower_taking(draft, leg, model, _docked(draft, row))
+
+
+def _lower_release(draft: _Draft, leg: int, model: Release) -> None:
+    """Copy what a leg releases; an infinite mass stands for all of a payload."""
+    if model.payload is not None:
+        mass = math.inf if model.mass is None else model.mass
+        payload = _payload(draft, model.payload)
+        draft.steps.append(rows.StepRow(rows.RELEASE_PAYLOAD, leg, payload, mass, 1, 0))
+    for move in model.propellants:
+        load = _load(draft, move.stage, move.load)
+        draft.steps.append(rows.StepRow(rows.RELEASE_PROPELLANT, leg, load, move.mass or 0.0, 1, 0))
+
+
+def _lower_taking(draft: _Draft, leg: int, model: TakeOn, docked: int) -> None:
+    """Copy what a leg takes on; an infinite mass stands for as much as there is room for."""
+    if docked:
+        draft.steps.append(rows.StepRow(rows.DOCK, leg, docked, 0.0, 1, 0))
+    if model.payload is not None:
+        payload = _payload(draft, model.payload.name)
+        draft.steps.append(rows.StepRow(rows.TAKE_PAYLOAD, leg, payload, 0.0, 1, 0))
+    for move in model.propellants:
+        load = _load(draft, move.stage, move.load)
+        mass = math.inf if move.mass is None else move.mass
+        draft.steps.append(rows.StepRow(rows.TAKE_PROPELLANT, leg, load, mass, 1, 0))
 
 
 def _payload(draft: _Draft, name: str) -> int:
@@ -292,16 +302,7 @@ def _lit_engines(draft: _Draft, account: _Account, stage: int) -> list[int]:
 
 def _finished(draft: _Draft) -> Lowered:
     """Close the tables."""
-    burners: list[rows.BurnerRow] = []
-    lit: list[int] = []
-    burner_of: list[int] = []
-    for account in draft.accounts:
-        for stage in range(len(draft.stages)):
-            engines = _lit_engines(draft, account, stage)
-            burner_of.append(len(burners) if engines else -1)
-            if engines:
-                burners.append(rows.BurnerRow(stage, len(lit), len(lit) + len(engines)))
-                lit.extend(engines)
+    burners, lit, burner_of = _burners(draft)
     riding = [_riding(draft, index, payload) for index, payload in enumerate(draft.payloads)]
     boilers = [index for index, load in enumerate(draft.loads) if load.boiloff_per_day > 0.0]
     unplanned = rows.BranchRow(-2, 0.0, 0.0, 0)
@@ -342,6 +343,21 @@ def _finished(draft: _Draft) -> Lowered:
         accounts=draft.accounts,
         branches=list(draft.branches),
     )
+
+
+def _burners(draft: _Draft) -> tuple[list[rows.BurnerRow], list[int], list[int]]:
+    """Engines that each account lights on each stage, and where they stand."""
+    burners: list[rows.BurnerRow] = []
+    lit: list[int] = []
+    burner_of: list[int] = []
+    for account in draft.accounts:
+        for stage in range(len(draft.stages)):
+            engines = _lit_engines(draft, account, stage)
+            burner_of.append(len(burners) if engines else -1)
+            if engines:
+                burners.append(rows.BurnerRow(stage, len(lit), len(lit) + len(engines)))
+                lit.extend(engines)
+    return burners, lit, burner_of
 
 
 def _riding(draft: _Draft, index: int, payload: Payload) -> rows.PayloadRow:

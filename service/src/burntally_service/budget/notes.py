@@ -3,6 +3,7 @@
 from collections.abc import Iterator
 
 from burntally.model.budget import Finding
+from burntally.model.vehicle import MassList, Vehicle
 from burntally_service.budget.drawing import Drawn, stage_pointer
 from burntally_service.budget.leg_books import load_name
 from burntally_service.budget.plan import PlannedLeg
@@ -29,7 +30,8 @@ def notes(drawn: Drawn) -> Iterator[Finding]:
     yield from _feeds(drawn)
     yield from _ledger_notes(drawn)
     yield from _left(drawn)
-    yield from _rules(drawn)
+    yield from _uncharged_categories(drawn)
+    yield from _ungrown_masses(drawn)
 
 
 def _feeds(drawn: Drawn) -> Iterator[Finding]:
@@ -112,8 +114,8 @@ def _left(drawn: Drawn) -> Iterator[Finding]:
             )
 
 
-def _rules(drawn: Drawn) -> Iterator[Finding]:
-    """Categories without a contingency rule, and mass items without growth."""
+def _uncharged_categories(drawn: Drawn) -> Iterator[Finding]:
+    """Categories that are charged and that no rule adds contingency to, each at its first leg."""
     seen: set[str] = set()
     for branch, plan in enumerate(drawn.branches):
         for row in plan.legs if plan else ():
@@ -123,15 +125,11 @@ def _rules(drawn: Drawn) -> Iterator[Finding]:
                 seen.add(row.category)
                 message = f"no rule adds contingency to the category {row.category}"
                 yield _note("no-contingency", message, row, drawn.branch_name(branch))
-    vehicle = drawn.design.vehicle
-    stages = [
-        (f"{stage_pointer(index)}/dry_mass", stage.dry_mass, stage.mass_growth)
-        for index, stage in enumerate(vehicle.stages)
-    ]
-    payloads = [
-        (f"/vehicle/payloads/{index}/mass", payload.mass, None) for index, payload in enumerate(vehicle.payloads)
-    ]
-    for pointer, masses, fallback in [*stages, *payloads]:
+
+
+def _ungrown_masses(drawn: Drawn) -> Iterator[Finding]:
+    """The first mass item that no growth covers, its own or a rule's."""
+    for pointer, masses, fallback in _mass_lists(drawn.design.vehicle):
         if has_uncovered_item(masses, drawn.rules, fallback=fallback):
             yield Finding(
                 code="no-growth",
@@ -141,3 +139,11 @@ def _rules(drawn: Drawn) -> Iterator[Finding]:
                 remedies=[],
             )
             return
+
+
+def _mass_lists(vehicle: Vehicle) -> Iterator[tuple[str, MassList, float | None]]:
+    """Every mass list of a vehicle, with its pointer and the growth that its part falls back on."""
+    for index, stage in enumerate(vehicle.stages):
+        yield f"{stage_pointer(index)}/dry_mass", stage.dry_mass, stage.mass_growth
+    for index, payload in enumerate(vehicle.payloads):
+        yield f"/vehicle/payloads/{index}/mass", payload.mass, None

@@ -123,34 +123,18 @@ def plan_branch(
     """
     mission = design.mission
     of: Branch | None = mission.branches[branch - 1] if branch else None
-    legs = of.legs if of else mission.legs
     base = f"/mission/branches/{branch - 1}" if of else "/mission"
     own_reserve = of.reserve if of else None
     location, elapsed = handoff.location, handoff.elapsed
     planned: list[PlannedLeg] = []
-    for index, leg in enumerate(legs):
+    for index, leg in enumerate(of.legs if of else mission.legs):
         pointer = f"{base}/legs/{index}"
         key = (id(leg), location, elapsed, mission.epoch)
         if key not in memo:
             clock = Clock(elapsed=elapsed, epoch=mission.epoch)
             memo[key] = leg, plan_leg(leg, location, bodies=bodies, clock=clock, pointer=pointer)
         plan = memo[key][1]
-        category = category_of(leg)
-        rule_index = -1 if category is None else rule_for(category, rules)
-        rule = no_rule() if rule_index < 0 else rules.contingency[rule_index]
-        row = PlannedLeg(
-            leg=leg,
-            index=index,
-            pointer=pointer,
-            start=location,
-            elapsed=elapsed,
-            plan=plan,
-            category=category,
-            rule=rule,
-            rule_index=rule_index,
-            charged=_is_charged(plan, rule),
-        )
-        planned.append(row)
+        planned.append(_planned_leg(plan, rules, leg=leg, at=(index, pointer), start=(location, elapsed)))
         location, elapsed = plan.end, elapsed + plan.duration
     return BranchPlan(
         name=of.of if of else "main",
@@ -161,6 +145,27 @@ def plan_branch(
         # Where a preset gave the reserve, the nearest ancestor in the design is told.
         reserve_pointer=f"{base}/reserve" if own_reserve else "/rules/reserve" if design.rules.reserve else "/rules",
         start_elapsed=handoff.elapsed,
+    )
+
+
+def _planned_leg(
+    plan: LegPlan, rules: Rules, *, leg: Leg, at: tuple[int, str], start: tuple[Location | None, float]
+) -> PlannedLeg:
+    """A plan with the rule that its leg takes: `at` is index and pointer of the leg, `start` its place and time."""
+    category = category_of(leg)
+    rule_index = -1 if category is None else rule_for(category, rules)
+    rule = no_rule() if rule_index < 0 else rules.contingency[rule_index]
+    return PlannedLeg(
+        leg=leg,
+        index=at[0],
+        pointer=at[1],
+        start=start[0],
+        elapsed=start[1],
+        plan=plan,
+        category=category,
+        rule=rule,
+        rule_index=rule_index,
+        charged=_is_charged(plan, rule),
     )
 
 

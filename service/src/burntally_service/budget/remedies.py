@@ -9,6 +9,7 @@ from msgspec import structs
 from burntally.model.budget import Finding, Remedy
 from burntally.model.design import Design
 from burntally.model.errors import BurntallyError
+from burntally_service.budget.changes import RESERVE, Change, changes, least_change
 from burntally_service.budget.drawing import Drawn, draw
 from burntally_service.budget.findings import findings_of
 from burntally_service.budget.leg_books import margin_of
@@ -22,26 +23,9 @@ _OWING = frozenset(
 )
 _SHORT = frozenset({*_OWING, "release-short", "overfilled"})
 
-_RESERVE = -1
-"""Stands for the reserve where a leg is asked for."""
-
 _MOST_TOLD = 3
-_MOST_TRIES = 40
 _MOST_STEPS_TALLIED = 30_000
 """Work that the search for remedies may do, in steps of a plan tallied: about a second at worst."""
-
-_SIGNIFICANT = 4
-"""Digits that a changed number is rounded to, away from the shortfall."""
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class _Change:
-    """A field that may be changed, up to a bound, and in what words."""
-
-    pointer: str
-    now: float
-    bound: float
-    words: str
 
 
 @dataclass(slots=True)
@@ -106,13 +90,13 @@ def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
 def _owed_remedies(drawn: Drawn, name: str, leg: int | None, bench: _Bench) -> list[Remedy]:
     """Changes that let a whole branch be paid, or one leg of it, the smallest first."""
     found: list[tuple[float, Remedy]] = []
-    for change in _changes(drawn, _branch_index(drawn, name), leg):
+    for change in changes(drawn, _branch_index(drawn, name), leg):
 
-        def owed(value: float, change: _Change = change) -> float:
+        def owed(value: float, change: Change = change) -> float:
             again = bench.draw(change.pointer, value)
             return math.inf if again is None else _owed(again, name, leg)
 
-        value = _least_change(change, owed)
+        value = least_change(change, owed)
         if value is not None:
             remedy = _checked(bench, change, value, lambda again: _owed(again, name, leg) == 0.0)
             if remedy is not None:
@@ -130,81 +114,13 @@ def _owed(drawn: Drawn, name: str, leg: int | None) -> float:
         if plan and plan.name == name:
             if leg is None:
                 return drawn.books.branch_owed[index]
-            if leg == _RESERVE:
+            if leg == RESERVE:
                 return drawn.books.reserve_owed[index]
             return drawn.books.owed[drawn.legs_of(index)[leg][0]]
     return math.inf
 
 
-def _changes(drawn: Drawn, branch: int, only: int | None) -> Iterator[_Change]:
-    """Fields whose change may let a branch be paid: loads and engines of its payers, and payloads."""
-    tables = drawn.lowered.tables
-    stages = len(tables.stages)
-    payers: set[int] = set()
-    chosen = None if only is None or only == _RESERVE else drawn.legs_of(branch)[only][0]
-    for leg, row in enumerate(tables.legs):
-        if chosen is not None and leg != chosen:
-            continue
-        owes = drawn.books.owed[leg] > 0.0 or (row.reserves and drawn.books.reserve_owed[branch] > 0.0)
-        if row.branch == branch and owes:
-            base = row.account * stages
-            payers |= {stage for stage in range(stages) if tables.burner_of[base + stage] >= 0}
-    for load, (stage, place) in enumerate(drawn.lowered.loads):
-        if stage in payers:
-            row_of_load = tables.loads[load]
-            model = drawn.lowered.stages[stage].propellants[place]
-            pointer = f"/vehicle/stages/{stage}/propellants/{place}/mass"
-            # An empty load tells nothing of its size, so the whole stack does.
-            bound = min(row_of_load.capacity, 1000.0 * max(model.mass, drawn.initial_mass), 1e9)
-            yield _Change(pointer=pointer, now=model.mass, bound=bound, words=f"load {model.name} of stage {stage + 1}")
-    for index, payload in enumerate(drawn.design.vehicle.payloads):
-        if isinstance(payload.mass, float) and payload.mass > 0.0:
-            pointer = f"/vehicle/payloads/{index}/mass"
-            yield _Change(pointer=pointer, now=payload.mass, bound=0.0, words=f"carry {payload.name}")
-    for engine, (stage, place) in enumerate(drawn.lowered.engines):
-        if stage in payers and not tables.engines[engine].auxiliary:
-            isp = tables.engines[engine].isp
-            pointer = f"/vehicle/stages/{stage}/engines/{place}/isp"
-            yield _Change(pointer=pointer, now=isp, bound=1.5 * isp, words=f"isp of {drawn.engine_name(engine)}")
-
-
-def _least_change(change: _Change, owed: Callable[[float], float]) -> float | None:
-    """Value nearest to the present one at which nothing is owed, to a few digits; None if not even the bound is enough.
-
-    What is owed falls almost straight towards zero, so secants from the owing side find the place in a few runs, and
-    halving is left for where they do not.
-    """
-    short, enough = change.now, change.bound
-    if enough == short or owed(enough) > 0.0:
-        return None
-    owed_short = owed(short)
-    guess = 0.5 * (short + enough) if enough < short else min(2.0 * short, 0.5 * (short + enough))
-    for tries in range(_MOST_TRIES):
-        guess = _rounded(guess, up=enough > short)
-        if (guess - short) * (guess - enough) >= 0.0:
-            guess = _rounded(0.5 * (short + enough), up=enough > short)
-        if (guess - short) * (guess - enough) >= 0.0:
-            break
-        owed_guess = owed(guess)
-        if owed_guess > 0.0:
-            slope = (owed_short - owed_guess) / (guess - short)
-            short, owed_short = guess, owed_guess
-            guess = short + owed_short / slope if slope * (enough - short) > 0.0 and tries % 4 else enough
-        else:
-            enough = guess
-            guess = short + (enough - short) * 0.9 if tries % 2 else 0.5 * (short + enough)
-    return enough
-
-
-def _rounded(value: float, *, up: bool) -> float:
-    """Round to a few significant digits, up or down."""
-    if value == 0.0:
-        return value
-    scale = 10.0 ** (_SIGNIFICANT - 1 - math.floor(math.log10(abs(value))))
-    return (math.ceil(value * scale) if up else math.floor(value * scale)) / scale
-
-
-def _checked(bench: _Bench, change: _Change, value: float, mends: Callable[[Drawn], bool]) -> Remedy | None:
+def _checked(bench: _Bench, change: Change, value: float, mends: Callable[[Drawn], bool]) -> Remedy | None:
     """Run a change once more, with the margin that it brings; None if it does not mend after all."""
     again = bench.draw(change.pointer, value, with_slack=True)
     if again is None or not mends(again):
@@ -231,7 +147,7 @@ def _for_itself(drawn: Drawn, finding: Finding, bench: _Bench) -> list[Remedy]:
     """Changes that let one leg be paid, or the reserve, in a branch that no single change mends."""
     if finding.code not in _OWING or finding.branch is None:
         return []
-    return _owed_remedies(drawn, finding.branch, _RESERVE if finding.leg is None else finding.leg, bench)
+    return _owed_remedies(drawn, finding.branch, RESERVE if finding.leg is None else finding.leg, bench)
 
 
 def _is_mended(again: Drawn, finding: Finding) -> bool:
@@ -305,7 +221,7 @@ def _less_asked(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remed
     for name in ("delta_v", "upkeep_per_year", "propellant"):
         stated = getattr(row.leg, name, None)
         if isinstance(stated, float) and stated > 0.0:
-            change = _Change(pointer=f"{row.pointer}/{name}", now=stated, bound=0.0, words=f"ask less: {name}")
+            change = Change(pointer=f"{row.pointer}/{name}", now=stated, bound=0.0, words=f"ask less: {name}")
             yield from _least_tried(finding, change, bench)
 
 
@@ -315,19 +231,19 @@ def _less_held(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy
     for name in ("delta_v", "fraction"):
         stated = getattr(reserve, name, 0.0)
         if stated > 0.0:
-            change = _Change(pointer=f"{finding.pointer}/{name}", now=stated, bound=0.0, words=f"hold less: {name}")
+            change = Change(pointer=f"{finding.pointer}/{name}", now=stated, bound=0.0, words=f"hold less: {name}")
             yield from _least_tried(finding, change, bench)
 
 
-def _least_tried(finding: Finding, change: _Change, bench: _Bench) -> Iterator[Remedy]:
+def _least_tried(finding: Finding, change: Change, bench: _Bench) -> Iterator[Remedy]:
     """Find the least change of one field that mends a finding."""
-    name, leg = finding.branch or "", _RESERVE if finding.leg is None else finding.leg
+    name, leg = finding.branch or "", RESERVE if finding.leg is None else finding.leg
 
     def owed(value: float) -> float:
         again = bench.draw(change.pointer, value)
         return math.inf if again is None else _owed(again, name, leg)
 
-    value = _least_change(change, owed)
+    value = least_change(change, owed)
     if value is not None:
         remedy = _checked(bench, change, value, lambda again: _is_mended(again, finding))
         if remedy is not None:

@@ -48,7 +48,7 @@ def note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
         if books.where[stage] != row.branch:
             continue
         burner = tables.burner_of[base + stage]
-        mask = 0
+        thrust, mdot, mask = 0.0, 0.0, 0
         if burner >= 0:
             thrust, mdot, mask = light_flow(tables, books, burner)
         if mask == 0:
