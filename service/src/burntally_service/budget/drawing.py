@@ -195,14 +195,16 @@ def _newly_started(design: Design, lowered: Lowered, lines: list[Line]) -> tuple
 def _handoff(lowered: Lowered, lines: list[Line], place: int) -> Handoff:
     """Where and when a part left: at its leg's start or end, or at a place that nobody knows within it."""
     line = lines[place]
-    row = lowered.legs[line.leg][1]
+    branch, row = lowered.legs[line.leg]
     if row is None:
-        return Handoff(location=None, elapsed=line.time)
+        # Only the reserve of a branch without a charged leg is burned in none, and that is when its legs are over.
+        return Handoff(location=None, elapsed=line.time, left_in=(branch, -1))
+    left_in = (branch, row.index)
     burned = [other.purpose for other in lines[:place] if other.leg == line.leg and other.kind == rows.LINE_BURN]
     if not row.plan.manoeuvres or (not burned and not isinstance(row.leg, Ascend)):
-        return Handoff(location=row.start, elapsed=line.time)
+        return Handoff(location=row.start, elapsed=line.time, left_in=left_in)
     settled = any(purpose in {rows.CONTINGENCY, rows.RESERVE} for purpose in burned)
-    return Handoff(location=row.plan.end if settled else None, elapsed=line.time)
+    return Handoff(location=row.plan.end if settled else None, elapsed=line.time, left_in=left_in)
 
 
 def _slack(lowered: Lowered, books: rows.Books) -> list[float | None]:

@@ -16,6 +16,10 @@ __all__ = ["Lowered", "lower"]
 _Account = tuple[tuple[str, ...], tuple[str, ...]]
 
 
+_OVER = -1
+"""Stands for the end of a branch where a leg of it is asked for."""
+
+
 @dataclass(slots=True, kw_only=True)
 class Lowered:
     """The tables, and what their indices stand for."""
@@ -51,6 +55,7 @@ class _Draft:
     steps: list[rows.StepRow] = field(default_factory=list)
     branch_rows: dict[int, rows.BranchRow] = field(default_factory=dict)
     emitted: set[int] = field(default_factory=set)
+    passed: set[tuple[int, int]] = field(default_factory=set)
     stage_index: dict[str, int] = field(default_factory=dict)
 
 
@@ -85,6 +90,7 @@ def lower(vehicle: Vehicle, rules: Rules, branches: Sequence[BranchPlan | None])
         _lower_items(draft, len(vehicle.stages) + index, payload.mass, (None, 0.0))
     _emit_branch(draft, 0)
     for branch in range(1, len(branches)):
+        _emit_after_parent(draft, branch)
         _emit_branch(draft, branch)
     return _finished(draft)
 
@@ -149,8 +155,9 @@ def _emit_branch(draft: _Draft, branch: int) -> None:
     for index, row in enumerate(plan.legs):
         docked = _docked(draft, row)
         if docked:
-            _emit_branch(draft, docked)
+            _emit_after_parent(draft, docked)
         _lower_leg(draft, branch, row, (index in settling, index == last))
+        draft.passed.add((branch, index))
     if last < 0:
         _hold_at_end(draft, branch)
     draft.branch_rows[branch] = rows.BranchRow(
@@ -159,6 +166,18 @@ def _emit_branch(draft: _Draft, branch: int) -> None:
         plan.reserve.delta_v,
         len(draft.steps),
     )
+    draft.passed.add((branch, _OVER))
+
+
+def _emit_after_parent(draft: _Draft, branch: int) -> None:
+    """Write the steps of a branch after those of the branch that its part left, if it has left by now."""
+    plan = draft.branches[branch]
+    if plan is None:
+        return
+    if plan.left_in[0] not in draft.emitted:
+        _emit_after_parent(draft, plan.left_in[0])
+    if plan.left_in in draft.passed:
+        _emit_branch(draft, branch)
 
 
 def _settling_legs(plan: BranchPlan) -> set[int]:
@@ -257,7 +276,8 @@ def _lower_release(draft: _Draft, leg: int, model: Release) -> None:
 def _lower_taking(draft: _Draft, leg: int, model: TakeOn, docked: int) -> None:
     """Copy what a leg takes on; an infinite mass stands for as much as there is room for."""
     if docked:
-        draft.steps.append(rows.StepRow(rows.DOCK, leg, docked, 0.0, 1, 0))
+        is_over = float((docked, _OVER) in draft.passed)
+        draft.steps.append(rows.StepRow(rows.DOCK, leg, docked, is_over, 1, 0))
     if model.payload is not None:
         payload = _payload(draft, model.payload.name)
         draft.steps.append(rows.StepRow(rows.TAKE_PAYLOAD, leg, payload, 0.0, 1, 0))

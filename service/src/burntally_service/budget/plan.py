@@ -24,10 +24,11 @@ OPEN_ACCOUNT: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
 
 class Handoff(Struct, frozen=True, kw_only=True):
-    """Where and when a branch starts: how the parent's books say that its part left."""
+    """Where and when a branch starts, and in which branch and leg: how the parent's books say that its part left."""
 
     location: Location | None
     elapsed: float
+    left_in: tuple[int, int] = (0, -1)
     stated_ascent: bool = False
 
 
@@ -68,6 +69,7 @@ class BranchPlan(Struct, frozen=True, kw_only=True):
     reserve: Reserve
     reserve_pointer: str
     start_elapsed: float
+    left_in: tuple[int, int]
 
     @property
     def end(self) -> Location | None:
@@ -145,6 +147,7 @@ def plan_branch(
         # Where a preset gave the reserve, the nearest ancestor in the design is told.
         reserve_pointer=f"{base}/reserve" if own_reserve else "/rules/reserve" if design.rules.reserve else "/rules",
         start_elapsed=handoff.elapsed,
+        left_in=handoff.left_in,
     )
 
 

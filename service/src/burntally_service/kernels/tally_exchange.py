@@ -67,7 +67,7 @@ def exchange(tables: Tables, books: Books, op: int, order: tuple[int, int, float
     elif op == TAKE_PROPELLANT:
         _take_propellant(tables, books, leg, (part, amount))
     elif op == DOCK:
-        _dock(tables, books, leg, part)
+        _dock(tables, books, leg, (part, amount))
 
 
 def _tell(tables: Tables, books: Books, head: tuple[int, int, int], amounts: tuple[float, float]) -> None:
@@ -160,14 +160,15 @@ def _take_propellant(tables: Tables, books: Books, leg: int, order: tuple[int, f
     books.branch_mass[branch] += kg
 
 
-def _dock(tables: Tables, books: Books, leg: int, docked: int) -> None:
-    """Dock what is left of a finished branch on top of the stack."""
+def _dock(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -> None:
+    """Dock what is left of a branch, if it is over, on top of the stack; say so if there is nothing to dock."""
+    docked, is_over = order
     branch = tables.legs[leg].branch
     stages = tables.n_stages
     moved = 0
     for position in range(stages):
         stage = books.order[position - moved]
-        if books.where[stage] != docked:
+        if books.where[stage] != docked or is_over <= 0.0:
             continue
         for place in range(position - moved, stages - 1):
             books.order[place] = books.order[place + 1]
@@ -178,3 +179,5 @@ def _dock(tables: Tables, books: Books, leg: int, docked: int) -> None:
         books.where[stage] = branch
         books.branch_mass[branch] += mass
         books.branch_mass[docked] -= mass
+    if moved == 0:
+        _tell(tables, books, (LINE_ABSENT, leg, tables.branches[docked].part), (0.0, 0.0))

@@ -196,7 +196,10 @@ class LegRow(Struct, frozen=True, gc=False):
 
 
 class StepRow(Struct, frozen=True, gc=False):
-    """One thing to do, in order; `amount` is a delta-v [m/s], a mass [kg] or a time [s], as `op` asks."""
+    """One thing to do, in order.
+
+    `amount` is a delta-v [m/s], a mass [kg] or a time [s], as `op` asks; in a docking, 1 if the docked branch is over.
+    """
 
     op: int
     leg: int
