@@ -58,6 +58,9 @@ class Operation(Struct, frozen=True, kw_only=True):
         Takes the request, or nothing; returns the answer.
     cost
         `inline`: a closed form that may run where the request arrived; `thread`: slow enough to hold up others.
+    hasty
+        The function for use where the request arrived, if that is another: it raises `NeedsTimeError` where only the
+        function itself will do.
     pure
         Whether the answer is a function of the request alone.
     """
@@ -71,6 +74,7 @@ class Operation(Struct, frozen=True, kw_only=True):
     response: type[Struct]
     function: Callable[..., Struct]
     cost: Literal["inline", "thread"] = "inline"
+    hasty: Callable[..., Struct] | None = None
     pure: bool = True
 
     @property
@@ -78,15 +82,22 @@ class Operation(Struct, frozen=True, kw_only=True):
         """Whether the request travels in the body, and not in the path."""
         return self.method == "POST"
 
-    def call(self, request: Any) -> Struct:  # noqa: ANN401 - the row's own request type, which only the row knows
-        """Run the function on a decoded request."""
-        return self.function() if self.request is None else self.function(request)
+    def call(self, request: Any, *, in_haste: bool = False) -> Struct:  # noqa: ANN401 - the row's own request type
+        """Run the function on a decoded request, or the hasty one."""
+        function = self.hasty if in_haste and self.hasty else self.function
+        return function() if self.request is None else function(request)
 
 
 def _create_budget(design: Design) -> Budget:
     from burntally_service.budget import draw_up
 
     return draw_up(design)
+
+
+def _create_budget_in_haste(design: Design) -> Budget:
+    from burntally_service.budget import draw_up
+
+    return draw_up(design, in_haste=True)
 
 
 def _compute_performance(request: PerformanceRequest) -> Performance:
@@ -156,7 +167,7 @@ _ROWS: Final = (
         response=Budget,
         function=_create_budget,
         # The remedies of a design that does not close are each run again, and that takes its time.
-        cost="thread",
+        hasty=_create_budget_in_haste,
     ),
     Operation(
         id="compute_performance",
@@ -232,7 +243,9 @@ def operation_named(operation_id: str) -> Operation:
         raise LookupError(f"no operation is called {operation_id!r}; there are {', '.join(OPERATIONS)}") from None
 
 
-def answer(operation_id: str, body: bytes, media_type: str = JSON, accept: str = JSON) -> bytes:
+def answer(
+    operation_id: str, body: bytes, media_type: str = JSON, accept: str = JSON, *, in_haste: bool = False
+) -> bytes:
     """Answer one request: decode it, compute, encode. This is all that every way in has in common.
 
     Parameters
@@ -245,6 +258,8 @@ def answer(operation_id: str, body: bytes, media_type: str = JSON, accept: str =
         What the body is written in: `application/json` or `application/msgpack`.
     accept
         What the answer is to be written in, one of the same two.
+    in_haste
+        Whether to give up where only a function that takes its time will do.
 
     Returns
     -------
@@ -261,7 +276,9 @@ def answer(operation_id: str, body: bytes, media_type: str = JSON, accept: str =
         Nothing bears the name that was asked for.
     LookupError
         There is no such operation.
+    NeedsTimeError
+        In haste, where the answer takes its time.
     """
     operation = operation_named(operation_id)
     request = None if operation.request is None else decode(operation.request, body, media_type=media_type)
-    return encode(operation.call(request), media_type=accept)
+    return encode(operation.call(request, in_haste=in_haste), media_type=accept)

@@ -35,27 +35,27 @@ __all__ = [
 ]
 
 
-class Limiting(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Limiting(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """Where the margin is least: the first leg at the least slack, or the first that owes."""
 
     branch: Annotated[str, doc("Branch.")]
     leg: Annotated[int | None, doc("Index of the leg in its branch; absent: the reserve.")] = None
 
 
-class RuleUsed(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class RuleUsed(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """The contingency rule that a leg took."""
 
     category: Annotated[str, doc("Category of the rule.")]
     clause: Annotated[str | None, doc("Clause of the policy.")] = None
 
 
-class Losses(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Losses(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """What a leg loses beside its ideal manoeuvres [m/s]; a loss that was not estimated is absent."""
 
     finite_burn: Annotated[Number | None, doc("Loss of burns that take time [m/s].")] = None
 
 
-class ContingencyBook(Struct, frozen=True, kw_only=True):
+class ContingencyBook(Struct, frozen=True, kw_only=True, gc=False):
     """What each part of the rule adds [m/s]."""
 
     fraction: Annotated[Number, doc("Added by the rule's fraction [m/s].")]
@@ -63,7 +63,7 @@ class ContingencyBook(Struct, frozen=True, kw_only=True):
     fixed: Annotated[Number, doc("Added by the rule's fixed part [m/s].")]
 
 
-class Payer(Struct, frozen=True, kw_only=True):
+class Payer(Struct, frozen=True, kw_only=True, gc=False):
     """What one stage gave to a leg and its contingency."""
 
     stage: Annotated[str, doc("Stage.")]
@@ -72,7 +72,7 @@ class Payer(Struct, frozen=True, kw_only=True):
     propellant: Annotated[Number, doc("Propellant spent, losses at ignition apart [kg].")]
 
 
-class Manoeuvre(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Manoeuvre(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """One ideal manoeuvre of a leg."""
 
     name: Annotated[str, doc("What it does.")]
@@ -86,7 +86,7 @@ class Manoeuvre(Struct, frozen=True, kw_only=True, omit_defaults=True):
     plane_change: Annotated[Number | None, doc("Change of plane [deg].")] = None
 
 
-class StrategyCost(Struct, frozen=True, kw_only=True):
+class StrategyCost(Struct, frozen=True, kw_only=True, gc=False):
     """What another way of flying the leg would cost."""
 
     strategy: Annotated[str, doc("Strategy.")]
@@ -94,7 +94,7 @@ class StrategyCost(Struct, frozen=True, kw_only=True):
     duration: Annotated[Number, doc("Time that it takes [s].")]
 
 
-class Burn(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Burn(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """One interval of one set of lit engines."""
 
     stage: Annotated[str, doc("Stage.")]
@@ -114,7 +114,7 @@ class Burn(Struct, frozen=True, kw_only=True, omit_defaults=True):
     acceleration_burnout: Annotated[Number, doc("Acceleration at burn-out [m/s2].")]
 
 
-class Event(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Event(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """Something that happens within a leg, in order."""
 
     kind: Annotated[
@@ -125,7 +125,7 @@ class Event(Struct, frozen=True, kw_only=True, omit_defaults=True):
     time: Annotated[Number, doc("Since the mission's start [s].")]
 
 
-class LegBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class LegBook(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """The ledger line of one leg; `mass_after` is after its contingency and before a reserve."""
 
     name: Annotated[str | None, doc("Name of the leg.")] = None
@@ -158,7 +158,7 @@ class LegBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
     events: Annotated[list[Event], doc("Events.")]
 
 
-class ReserveBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class ReserveBook(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """What a branch holds at its end."""
 
     charged: Annotated[Number, doc("Reserve [m/s].")]
@@ -166,7 +166,7 @@ class ReserveBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
     slack: Annotated[Number | None, doc("What could be added and still be paid [m/s].")] = None
 
 
-class BranchBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class BranchBook(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """The books of one branch; `charged` is the legs', the reserve stands beside it."""
 
     name: Annotated[str, doc("`main`, or the part that the branch is of.")]
@@ -181,7 +181,7 @@ class BranchBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
     end_mass: Annotated[Number | None, doc("Mass at the end; absent: the branch never started [kg].")] = None
 
 
-class DryMass(Struct, frozen=True, kw_only=True):
+class DryMass(Struct, frozen=True, kw_only=True, gc=False):
     """Dry mass as written, with growth, and with the system contingency."""
 
     basic: Annotated[Number, doc("As written [kg].")]
@@ -189,7 +189,7 @@ class DryMass(Struct, frozen=True, kw_only=True):
     allowable: Annotated[Number, doc("With the system contingency; the books use it [kg].")]
 
 
-class DeltaVBook(Struct, frozen=True, kw_only=True):
+class DeltaVBook(Struct, frozen=True, kw_only=True, gc=False):
     """What a stage can give, gave and keeps, in vacuum [m/s]."""
 
     capability: Annotated[Number, doc("Ideal delta-v of the usable load under the stack as first flown [m/s].")]
@@ -197,7 +197,7 @@ class DeltaVBook(Struct, frozen=True, kw_only=True):
     left: Annotated[Number, doc("Ideal delta-v of what is left, under the stack that it is in at the end [m/s].")]
 
 
-class LoadBook(Struct, frozen=True, kw_only=True):
+class LoadBook(Struct, frozen=True, kw_only=True, gc=False):
     """Where the propellant of one load went; loaded + taken on = the sum of the rest [kg]."""
 
     name: Annotated[str, doc("Load.")]
@@ -212,7 +212,7 @@ class LoadBook(Struct, frozen=True, kw_only=True):
     left: Annotated[Number, doc("Usable propellant left [kg].")]
 
 
-class Separated(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Separated(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """Where and when a stage left the stack."""
 
     branch: Annotated[str, doc("Branch that it left.")]
@@ -221,7 +221,7 @@ class Separated(Struct, frozen=True, kw_only=True, omit_defaults=True):
     left_behind: Annotated[Number, doc("Usable propellant that left with it and that no branch burns [kg].")]
 
 
-class StageBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class StageBook(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """What one stage has, gave and keeps."""
 
     name: Annotated[str, doc("Stage.")]
@@ -234,7 +234,7 @@ class StageBook(Struct, frozen=True, kw_only=True, omit_defaults=True):
     separated: Annotated[Separated | None, doc("Absent: it stayed.")] = None
 
 
-class Delivery(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Delivery(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """A payload released, and where."""
 
     name: Annotated[str, doc("Payload.")]
@@ -258,7 +258,7 @@ class Remedy(Struct, frozen=True, kw_only=True, omit_defaults=True, rename={"fro
     message: Annotated[str, doc("The change in words.")]
 
 
-class Finding(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Finding(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """Something about the design that is wrong, doubtful or worth knowing."""
 
     code: Annotated[str, doc("Stable code.")]
@@ -273,21 +273,21 @@ class Finding(Struct, frozen=True, kw_only=True, omit_defaults=True):
     remedies: Annotated[list[Remedy], doc("Changes that would mend it.")]
 
 
-class Caution(Struct, frozen=True, kw_only=True):
+class Caution(Struct, frozen=True, kw_only=True, gc=False):
     """A bound on what the numbers are valid for; it never judges the design."""
 
     code: Annotated[str, doc("Stable code.")]
     message: Annotated[str, doc("In words.")]
 
 
-class TableUsed(Struct, frozen=True, kw_only=True):
+class TableUsed(Struct, frozen=True, kw_only=True, gc=False):
     """A table of data that the numbers rest on."""
 
     name: Annotated[str, doc("Table.")]
     digest: Annotated[str, doc("SHA-256 of its file.")]
 
 
-class Provenance(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Provenance(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """What the budget was made from and by."""
 
     format: Annotated[int, doc("Version of the design format.")]
@@ -298,7 +298,7 @@ class Provenance(Struct, frozen=True, kw_only=True, omit_defaults=True):
     tables: Annotated[list[TableUsed], doc("Tables of data.")]
 
 
-class Budget(Struct, frozen=True, kw_only=True, omit_defaults=True):
+class Budget(Struct, frozen=True, kw_only=True, omit_defaults=True, gc=False):
     """Whether every burn can be paid, by whom, with what margin, and what is wrong."""
 
     closes: Annotated[bool, doc("No margin below zero and no finding of severity error.")]

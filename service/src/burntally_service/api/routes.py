@@ -1,6 +1,7 @@
 """Routes: one for each row of the operations table, made in one loop, and those that tell about the service."""
 
 import asyncio
+import contextlib
 from collections.abc import Iterable
 from typing import Final
 
@@ -12,6 +13,7 @@ from litestar.types import ASGIApp
 from burntally_service import operations
 from burntally_service.api.exchange import AnyRequest, open_exchange, read_body, reply
 from burntally_service.api.settings import Settings
+from burntally_service.haste import NeedsTimeError
 from burntally_service.operations import Operation
 
 __all__ = ["operation_routes"]
@@ -29,10 +31,7 @@ def _route(operation: Operation, settings: Settings) -> HTTPRouteHandler:
     async def handle(request: AnyRequest) -> ASGIApp:
         exchange = open_exchange(request, operation)
         asked = await _asked(request, operation, settings)
-        if operation.cost == "inline" and len(asked) <= _INLINE_BODY_BYTES:
-            told = operations.answer(operation.id, asked, exchange.media_type, exchange.accept)
-        else:
-            told = await asyncio.to_thread(operations.answer, operation.id, asked, exchange.media_type, exchange.accept)
+        told = await _told(operation, asked, (exchange.media_type, exchange.accept))
         return reply(operation, exchange, asked=asked, told=told)
 
     methods = [HttpMethod.POST] if operation.takes_body else [HttpMethod.GET, HttpMethod.HEAD]
@@ -44,6 +43,14 @@ def _route(operation: Operation, settings: Settings) -> HTTPRouteHandler:
         status_code=200,
     )
     return route(handle)
+
+
+async def _told(operation: Operation, asked: bytes, media: tuple[str, str]) -> bytes:
+    """Answer where the request arrived if that is quick, in a thread otherwise."""
+    if operation.cost == "inline" and len(asked) <= _INLINE_BODY_BYTES:
+        with contextlib.suppress(NeedsTimeError):
+            return operations.answer(operation.id, asked, *media, in_haste=True)
+    return await asyncio.to_thread(operations.answer, operation.id, asked, *media)
 
 
 async def _asked(request: AnyRequest, operation: Operation, settings: Settings) -> bytes:

@@ -25,13 +25,15 @@ NOTICE = (
 )
 
 
-def draw_up(design: Design) -> Budget:
+def draw_up(design: Design, *, in_haste: bool = False) -> Budget:
     """Draw up the budget of a design.
 
     Parameters
     ----------
     design : Design
         The design, decoded and checked.
+    in_haste : bool
+        Whether to give up where closed forms do not suffice.
 
     Returns
     -------
@@ -42,9 +44,13 @@ def draw_up(design: Design) -> Budget:
     ------
     burntally.model.errors.UncomputableError
         If the design names a preset or a body that is not known, or an orbit that is none.
+    InconsistentError
+        If the bodies of the mission contradict each other.
+    NeedsTimeError
+        In haste, where a slack must be searched for or a shortfall asks for remedies.
     """
-    drawn = draw(design)
-    findings = with_remedies(drawn, findings_of(drawn))
+    drawn = draw(design, in_haste=in_haste)
+    findings = with_remedies(drawn, findings_of(drawn), in_haste=in_haste)
     faulty = {finding.branch for finding in findings if finding.severity == "error" and finding.branch is not None}
     margin, limiting = _margin(drawn)
     initial = drawn.initial_mass

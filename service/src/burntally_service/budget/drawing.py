@@ -12,6 +12,7 @@ from burntally_service.bodies import Body, system_of
 from burntally_service.budget.lower import Lowered, lower
 from burntally_service.budget.plan import BranchPlan, Handoff, PlanMemo, PlannedLeg, plan_branch
 from burntally_service.budget.rules import resolve
+from burntally_service.haste import NeedsTimeError
 from burntally_service.kernels import tally_rows as rows
 from burntally_service.kernels.tally import tally
 from burntally_service.kernels.tally_books import blank_books
@@ -102,7 +103,7 @@ class Drawn:
         return self.lowered.stages[stage].engines[place].name
 
 
-def draw(design: Design, *, with_slack: bool = True, memo: PlanMemo | None = None) -> Drawn:
+def draw(design: Design, *, with_slack: bool = True, memo: PlanMemo | None = None, in_haste: bool = False) -> Drawn:
     """Draw up the books of a design.
 
     A branch is planned once its parent's books tell where and when its part left, so the tally runs once more for each
@@ -116,6 +117,8 @@ def draw(design: Design, *, with_slack: bool = True, memo: PlanMemo | None = Non
         Whether the slack of each leg is wanted.
     memo : dict, optional
         Plans of legs made for designs that share them; changed.
+    in_haste : bool
+        Whether to give up where a slack must be searched for.
 
     Returns
     -------
@@ -150,7 +153,7 @@ def draw(design: Design, *, with_slack: bool = True, memo: PlanMemo | None = Non
         books=books,
         lines=lines,
         memo=plans_made,
-        slack=_slack(lowered, books) if with_slack else [],
+        slack=_slack(lowered, books, in_haste=in_haste) if with_slack else [],
     )
 
 
@@ -207,7 +210,7 @@ def _handoff(lowered: Lowered, lines: list[Line], place: int) -> Handoff:
     return Handoff(location=row.plan.end if settled else None, elapsed=line.time, left_in=left_in)
 
 
-def _slack(lowered: Lowered, books: rows.Books) -> list[float | None]:
+def _slack(lowered: Lowered, books: rows.Books, *, in_haste: bool) -> list[float | None]:
     """Slack by leg, then by branch for its reserve; none in a branch that owes."""
     tables = lowered.tables
     legs, stages, branches = len(tables.legs), len(tables.stages), len(tables.branches)
@@ -221,6 +224,8 @@ def _slack(lowered: Lowered, books: rows.Books) -> list[float | None]:
         if not has_one or books.branch_owed[branch] > 0.0 or not books.branch_started[branch]:
             continue
         slack = walk[0][mark]
+        if slack < 0.0 and in_haste:
+            raise NeedsTimeError
         if slack < 0.0:
             scratch = scratch or blank_books(tables, 0)
             slack = slack_by_search(tables, scratch, mark)

@@ -15,6 +15,7 @@ from burntally_service.budget.findings import findings_of
 from burntally_service.budget.leg_books import margin_of
 from burntally_service.budget.plan import PlanMemo, PlannedLeg
 from burntally_service.budget.pointing import value_at, with_value
+from burntally_service.haste import NeedsTimeError
 
 __all__ = ["with_remedies"]
 
@@ -51,7 +52,7 @@ class _Bench:
 _Attempt = Callable[[Drawn, Finding, _Bench], Iterator[Remedy]]
 
 
-def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
+def with_remedies(drawn: Drawn, findings: list[Finding], *, in_haste: bool = False) -> list[Finding]:
     """Add to each shortfall the changes that mend it.
 
     Parameters
@@ -60,6 +61,8 @@ def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
         The books of the design.
     findings : list of Finding
         What they show.
+    in_haste : bool
+        Whether to give up where there is a shortfall.
 
     Returns
     -------
@@ -68,6 +71,8 @@ def with_remedies(drawn: Drawn, findings: list[Finding]) -> list[Finding]:
     """
     if not any(finding.code in _SHORT for finding in findings):
         return findings
+    if in_haste:
+        raise NeedsTimeError
     bench = _Bench(drawn.design, drawn.memo, len(drawn.lowered.tables.steps))
     by_branch: dict[str, list[Remedy]] = {}
     mended: list[Finding] = []
