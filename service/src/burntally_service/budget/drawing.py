@@ -1,7 +1,7 @@
 """Drawing up: resolve, plan, lower, tally; what the books say, before it is explained."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from msgspec import Struct
 
@@ -19,7 +19,7 @@ from burntally_service.kernels.tally_books import blank_books
 from burntally_service.kernels.tally_slack import slack_by_search, slacks
 from burntally_service.legs.orbit import check_start
 
-__all__ = ["Drawn", "Line", "draw", "stage_pointer"]
+__all__ = ["Drawn", "Line", "Lit", "draw", "stage_pointer"]
 
 _ROOM_PER_STEP = 4
 
@@ -44,6 +44,14 @@ class Line(Struct, frozen=True, gc=False):
     spare: float
 
 
+class Lit(Struct, frozen=True, gc=False):
+    """Engines that burn together: names, thrust in vacuum [N] and mass flow [kg/s]."""
+
+    names: tuple[str, ...]
+    thrust: float
+    mdot: float
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Drawn:
     """Books of a design, with the names that their indices stand for.
@@ -62,6 +70,7 @@ class Drawn:
     lines: list[Line]
     memo: PlanMemo
     slack: list[float | None]
+    lights: dict[tuple[int, int], Lit] = field(default_factory=dict)
 
     @property
     def branches(self) -> list[BranchPlan | None]:
@@ -92,10 +101,26 @@ class Drawn:
         stages = len(self.lowered.stages)
         return self.lowered.stages[part].name if part < stages else self.lowered.payloads[part - stages].name
 
-    def engines_lit(self, stage: int, mask: int) -> list[int]:
-        """Engines of a stage, as indices into the tables, whose bit is set."""
-        row = self.lowered.tables.stages[stage]
-        return [engine for engine in range(row.first_engine, row.end_engine) if mask >> (engine - row.first_engine) & 1]
+    def lit(self, stage: int, mask: int) -> Lit:
+        """The engines of a stage whose bit is set, with what they give together."""
+        found = self.lights.get((stage, mask))
+        if found is None:
+            found = self.lights[stage, mask] = self._lit(stage, mask)
+        return found
+
+    def _lit(self, stage: int, mask: int) -> Lit:
+        """Sum up some engines of a stage."""
+        tables = self.lowered.tables
+        row = tables.stages[stage]
+        names: list[str] = []
+        thrust = 0.0
+        mdot = 0.0
+        for engine in range(row.first_engine, row.end_engine):
+            if mask >> (engine - row.first_engine) & 1:
+                names.append(self.engine_name(engine))
+                thrust += tables.engines[engine].count * tables.engines[engine].thrust
+                mdot += self.books.engine_flow[engine]
+        return Lit(tuple(names), thrust, mdot)
 
     def engine_name(self, engine: int) -> str:
         """Name of an engine of the tables."""

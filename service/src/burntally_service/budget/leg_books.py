@@ -194,7 +194,7 @@ def _payers(drawn: Drawn, lines: list[Line]) -> list[Payer]:
     return [
         Payer(
             stage=drawn.part_name(stage),
-            engines=[drawn.engine_name(engine) for engine in drawn.engines_lit(stage, mask)],
+            engines=list(drawn.lit(stage, mask).names),
             delta_v=delta_v,
             propellant=kg,
         )
@@ -214,23 +214,18 @@ def local_gravity(drawn: Drawn, row: PlannedLeg) -> float | None:
 
 def _burn(drawn: Drawn, row: PlannedLeg, line: Line) -> Burn:
     """One burn; its thrust and flow are those of the engines that its line says were lit."""
-    tables = drawn.lowered.tables
-    stage = tables.burners[line.part].stage
-    lit = drawn.engines_lit(stage, line.mask)
-    thrust = 0.0
-    mdot = 0.0
-    for engine in lit:
-        thrust += tables.engines[engine].count * tables.engines[engine].thrust
-        mdot += drawn.books.engine_flow[engine]
+    stage = drawn.lowered.tables.burners[line.part].stage
+    lit = drawn.lit(stage, line.mask)
+    thrust = lit.thrust
     after = line.mass - line.kg
     gravity = local_gravity(drawn, row)
     return Burn(
         stage=drawn.part_name(stage),
-        engines=[drawn.engine_name(engine) for engine in lit],
+        engines=list(lit.names),
         purpose="manoeuvre" if isinstance(row.leg, Spiral) and line.purpose == rows.UPKEEP else _PURPOSES[line.purpose],
         delta_v=line.delta_v,
         propellant=line.kg,
-        burn_time=line.kg / mdot,
+        burn_time=line.kg / lit.mdot,
         time=line.time,
         mass_before=line.mass,
         mass_after=after,

@@ -4,7 +4,7 @@ from collections.abc import Callable, Iterator
 
 from burntally.model.budget import Finding
 from burntally.model.mission import Ascend, Site
-from burntally_service.budget.drawing import Drawn, Line
+from burntally_service.budget.drawing import Drawn, Line, Lit
 from burntally_service.budget.leg_books import local_gravity
 from burntally_service.budget.plan import PlannedLeg
 from burntally_service.kernels import tally_rows as rows
@@ -45,15 +45,9 @@ def limit_findings(drawn: Drawn) -> Iterator[Finding]:
     yield from _lift_off(drawn)
 
 
-def _thrust_and_flow(drawn: Drawn, line: Line) -> tuple[float, float]:
-    """Thrust [N] and mass flow [kg/s] of the engines that a line says were lit."""
-    tables = drawn.lowered.tables
-    thrust = 0.0
-    mdot = 0.0
-    for engine in drawn.engines_lit(tables.burners[line.part].stage, line.mask):
-        thrust += tables.engines[engine].count * tables.engines[engine].thrust
-        mdot += drawn.books.engine_flow[engine]
-    return thrust, mdot
+def _lit(drawn: Drawn, line: Line) -> Lit:
+    """The engines that a line says were lit."""
+    return drawn.lit(drawn.lowered.tables.burners[line.part].stage, line.mask)
 
 
 def _burn_limits(drawn: Drawn) -> Iterator[Finding]:
@@ -68,7 +62,8 @@ def _burn_limits(drawn: Drawn) -> Iterator[Finding]:
             continue
         for line in drawn.lines:
             if line.kind == rows.LINE_BURN:
-                value = measure(line, *_thrust_and_flow(drawn, line))
+                lit = _lit(drawn, line)
+                value = measure(line, lit.thrust, lit.mdot)
                 if value > limit:
                     yield _passed(drawn, line.leg, (name, code, unit), (value, limit))
 
@@ -136,7 +131,7 @@ def _first_thrust_to_weight(drawn: Drawn, leg: int, row: PlannedLeg) -> float | 
     gravity = local_gravity(drawn, row)
     for line in drawn.lines:
         if line.leg == leg and line.kind == rows.LINE_BURN and gravity is not None:
-            return _thrust_and_flow(drawn, line)[0] / (line.mass * gravity)
+            return _lit(drawn, line).thrust / (line.mass * gravity)
     return None
 
 
