@@ -2,7 +2,7 @@
 
 from hypothesis import settings
 
-from burntally_service.api.media import JSON
+from burntally.model.decode import JSON
 from tests.contract.generation import PROFILE, AnyCase, schema_for
 
 # The border reads both media types into the same values, so this run generates one of them.

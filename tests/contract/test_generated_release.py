@@ -2,7 +2,7 @@
 
 import pytest
 
-from burntally_service.api.media import JSON, MSGPACK
+from burntally.model.decode import JSON, MSGPACK
 from tests.contract.generation import RELEASE_PROFILE, AnyCase, schema_for
 
 schema = schema_for([JSON, MSGPACK], RELEASE_PROFILE)

@@ -1,8 +1,8 @@
 """The table of operations: one row for each thing that the service computes or tells.
 
-Routes, the published contract and the in-process client are all read off it, so an operation that joins the table
-has them all. Nothing here knows HTTP, and importing it loads no numbers library: a row's function imports its room
-when it is first called.
+Routes and the published contract are read off it, and `answer` runs any row, whichever way a request came in. The
+client has a table of its own, since it must not import the service. Nothing here knows HTTP, and importing it loads
+no numbers library: a row's function imports its room when it is first called.
 """
 
 from collections.abc import Callable
@@ -13,7 +13,7 @@ from msgspec import Struct
 from msgspec.structs import replace
 
 from burntally.model.budget import Budget
-from burntally.model.decode import decode, encode
+from burntally.model.decode import JSON, decode, encode
 from burntally.model.design import Design
 from burntally.model.errors import InconsistentError, Violation
 from burntally.model.operations import (
@@ -29,8 +29,6 @@ from burntally.model.operations import (
 from burntally.model.scalars import Name, doc
 
 __all__ = ["OPERATIONS", "Named", "Operation", "answer", "operation_named"]
-
-JSON: Final = "application/json"
 
 
 class Named(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
@@ -61,8 +59,6 @@ class Operation(Struct, frozen=True, kw_only=True):
     hasty
         The function for use where the request arrived, if that is another: it raises `NeedsTimeError` where only the
         function itself will do.
-    pure
-        Whether the answer is a function of the request alone.
     """
 
     id: str
@@ -75,7 +71,6 @@ class Operation(Struct, frozen=True, kw_only=True):
     function: Callable[..., Struct]
     cost: Literal["inline", "thread"] = "inline"
     hasty: Callable[..., Struct] | None = None
-    pure: bool = True
 
     @property
     def takes_body(self) -> bool:

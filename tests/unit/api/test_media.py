@@ -1,6 +1,7 @@
 import pytest
 
-from burntally_service.api.media import JSON, MSGPACK, body_media_type, chosen_media_type
+from burntally.model.decode import JSON, MSGPACK
+from burntally_service.api.media import body_media_type, chosen_media_type
 
 
 @pytest.mark.parametrize(

@@ -12,8 +12,8 @@ from typing import Any, Final
 
 import msgspec
 
+from burntally.model.decode import JSON
 from burntally_service.api import openapi
-from burntally_service.api.media import JSON
 from burntally_service.api.problems import ProblemType
 
 __all__ = ["page", "problem_list"]

@@ -12,8 +12,9 @@ from litestar.exceptions import InternalServerException
 from litestar.exceptions.http_exceptions import RequestEntityTooLarge
 from litestar.response.base import ASGIResponse
 
+from burntally.model.decode import JSON
 from burntally.model.errors import ContractError, Violation
-from burntally_service.api.media import JSON, body_media_type, chosen_media_type
+from burntally_service.api.media import body_media_type, chosen_media_type
 from burntally_service.api.problems import ProblemError
 from burntally_service.operations import Operation
 

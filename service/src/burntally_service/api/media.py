@@ -4,10 +4,9 @@ from collections.abc import Iterator, Sequence
 from functools import lru_cache
 from typing import Final
 
-__all__ = ["JSON", "MSGPACK", "body_media_type", "chosen_media_type"]
+from burntally.model.decode import JSON, MSGPACK
 
-JSON: Final = "application/json"
-MSGPACK: Final = "application/msgpack"
+__all__ = ["body_media_type", "chosen_media_type"]
 
 _READ_AS: Final = {
     JSON: JSON,

@@ -12,10 +12,10 @@ from typing import Any, Final
 
 import msgspec
 
+from burntally.model.decode import JSON, MSGPACK
 from burntally.model.operations import Problem
 from burntally_service.api.examples import answer_of, requests_of
 from burntally_service.api.exchange import VERSION
-from burntally_service.api.media import JSON, MSGPACK
 from burntally_service.api.problems import PROBLEM_JSON, PROBLEMS, ProblemType
 from burntally_service.api.schemas import component_schemas
 from burntally_service.operations import OPERATIONS, Operation

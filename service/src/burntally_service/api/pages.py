@@ -14,9 +14,10 @@ from litestar.params import FromPath
 from litestar.response.base import ASGIResponse
 from litestar.types import ASGIApp
 
+from burntally.model.decode import JSON
 from burntally_service.api import docs, openapi
 from burntally_service.api.exchange import AnyRequest, entity_tag, is_known
-from burntally_service.api.media import JSON, chosen_media_type
+from burntally_service.api.media import chosen_media_type
 from burntally_service.api.problems import PROBLEMS, ProblemError, ProblemType
 
 __all__ = ["page_routes"]

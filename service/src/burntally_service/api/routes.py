@@ -1,4 +1,4 @@
-"""Routes: one for each row of the operations table, made in one loop, and those that tell about the service."""
+"""Routes of the operations: one for each row of their table, all made alike."""
 
 import asyncio
 import contextlib

@@ -1,1 +1,1 @@
-"""A stack and how it burns: attached parts, propellant, engines lit, jettisons."""
+"""A vehicle without a mission: what its parts weigh, how its engines burn its loads down, and what that gives."""
