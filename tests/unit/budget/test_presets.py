@@ -98,3 +98,11 @@ def test_figures_of_esa_mar() -> None:
         "injection_error": (0.0, 0.0, 0.0),
         "navigation": (0.0, 0.0, 0.0),
     }
+
+
+@pytest.mark.parametrize("name", ["esa-2012", "esa-mar"])
+def test_the_tanks_of_esa_hold_a_tenth_more_than_their_load(name: str) -> None:
+    rules = preset_rules(name)
+    assert rules is not None
+    assert rules.limits is not None
+    assert rules.limits.fill_max == pytest.approx(1.0 / 1.1, rel=1e-15, abs=0.0)

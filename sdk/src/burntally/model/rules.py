@@ -78,6 +78,7 @@ class Rules(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True, omit_
     growth_table: Annotated[list[GrowthRow], Meta(max_length=500), doc("The project's own growth figures.")] = []
     reserve: Annotated[Reserve | None, doc("Held at the end of every branch.")] = None
     finite_burn: Annotated[
-        bool, doc("Charge the losses of finite burns; not estimated yet, and a caution says so where it matters.")
+        bool,
+        doc("Whether losses of finite burns are wanted; they are not estimated, and if wanted a caution says so."),
     ] = True
     limits: Annotated[Limits | None, doc("Limits.")] = None
