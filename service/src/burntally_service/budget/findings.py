@@ -49,15 +49,4 @@ def _planned(drawn: Drawn) -> Iterator[Finding]:
     for branch, plan in enumerate(drawn.branches):
         for row in plan.legs if plan else ():
             for found in row.plan.findings:
-                yield Finding(
-                    code=found.code,
-                    severity=found.severity,
-                    message=found.message,
-                    pointer=row.pointer + found.suffix,
-                    value=found.value,
-                    limit=found.limit,
-                    unit=found.unit,
-                    branch=drawn.branch_name(branch),
-                    leg=row.index,
-                    remedies=[],
-                )
+                yield found.told(row.pointer, branch=drawn.branch_name(branch), leg=row.index)

@@ -9,7 +9,6 @@ from burntally.model.budget import (
     Event,
     LegBook,
     Losses,
-    Manoeuvre,
     Payer,
     ReserveBook,
     RuleUsed,
@@ -144,7 +143,7 @@ def _leg_book(drawn: Drawn, leg: int, row: PlannedLeg, lines: list[Line]) -> Leg
         payers=_payers(drawn, lines),
         mass_before=books.mass_before[leg],
         mass_after=books.mass_after[leg],
-        manoeuvres=_manoeuvres(row, began),
+        manoeuvres=row.plan.told_manoeuvres(began),
         alternatives=list(row.plan.alternatives),
         burns=[_burn(drawn, row, line) for line in lines if line.kind == rows.LINE_BURN],
         events=[event for line in lines if (event := _event(drawn, line)) is not None],
@@ -157,26 +156,6 @@ def _rule_used(row: PlannedLeg) -> RuleUsed | None:
         return None
     rule: Contingency = row.rule
     return RuleUsed(category=rule.category, clause=rule.clause)
-
-
-def _manoeuvres(row: PlannedLeg, began: float) -> list[Manoeuvre]:
-    """Ideal manoeuvres of a leg, each at its time."""
-    manoeuvres: list[Manoeuvre] = []
-    time = began
-    for planned in row.plan.manoeuvres:
-        time += planned.coast_before
-        manoeuvres.append(
-            Manoeuvre(
-                name=planned.name,
-                body=planned.body,
-                place=planned.place,
-                time=time,
-                delta_v=planned.delta_v,
-                direction=None if planned.direction is None else list(planned.direction),
-                plane_change=planned.plane_change_deg,
-            )
-        )
-    return manoeuvres
 
 
 def _payers(drawn: Drawn, lines: list[Line]) -> list[Payer]:

@@ -4,7 +4,7 @@ from typing import Literal
 
 from msgspec import Struct
 
-from burntally.model.budget import Caution, StrategyCost
+from burntally.model.budget import Caution, Finding, Manoeuvre, StrategyCost
 from burntally.model.mission import Location
 
 __all__ = ["Clock", "LegPlan", "PlanFinding", "PlannedManoeuvre", "unplanned"]
@@ -81,6 +81,21 @@ class PlanFinding(Struct, frozen=True, kw_only=True):
     limit: float | None = None
     unit: str | None = None
 
+    def told(self, pointer: str, *, branch: str | None = None, leg: int | None = None) -> Finding:
+        """Tell it in the words of the contract, of the leg that a pointer leads to."""
+        return Finding(
+            code=self.code,
+            severity=self.severity,
+            message=self.message,
+            pointer=pointer + self.suffix,
+            value=self.value,
+            limit=self.limit,
+            unit=self.unit,
+            branch=branch,
+            leg=leg,
+            remedies=[],
+        )
+
 
 class LegPlan(Struct, frozen=True, kw_only=True):
     """What a leg asks, and where it ends.
@@ -132,6 +147,25 @@ class LegPlan(Struct, frozen=True, kw_only=True):
         for manoeuvre in self.manoeuvres:
             total += manoeuvre.coast_before
         return total
+
+    def told_manoeuvres(self, began: float) -> list[Manoeuvre]:
+        """Tell the manoeuvres in the words of the contract, each at its time in a leg that began at a time [s]."""
+        told: list[Manoeuvre] = []
+        time = began
+        for manoeuvre in self.manoeuvres:
+            time += manoeuvre.coast_before
+            told.append(
+                Manoeuvre(
+                    name=manoeuvre.name,
+                    body=manoeuvre.body,
+                    place=manoeuvre.place,
+                    time=time,
+                    delta_v=manoeuvre.delta_v,
+                    direction=None if manoeuvre.direction is None else list(manoeuvre.direction),
+                    plane_change=manoeuvre.plane_change_deg,
+                )
+            )
+        return told
 
 
 def unplanned(finding: PlanFinding, end: Location | None = None) -> LegPlan:

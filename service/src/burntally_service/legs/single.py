@@ -1,11 +1,10 @@
 """One leg by itself, without a vehicle: what the transfer operation answers."""
 
-from burntally.model.budget import Finding, Manoeuvre
 from burntally.model.operations import TransferAnswer, TransferRequest
 from burntally_service.bodies import system_of
 from burntally_service.legs.orbit import check_start
 from burntally_service.legs.plan import plan_leg
-from burntally_service.legs.planned import Clock, LegPlan, PlanFinding
+from burntally_service.legs.planned import Clock
 
 __all__ = ["transfer_of"]
 
@@ -38,43 +37,9 @@ def transfer_of(request: TransferRequest) -> TransferAnswer:
         strategy=plan.strategy,
         delta_v=plan.delta_v if planned else None,
         duration=plan.duration if planned else None,
-        manoeuvres=_manoeuvres(plan),
+        manoeuvres=plan.told_manoeuvres(0.0),
         alternatives=list(plan.alternatives),
         end=plan.end if planned else None,
-        findings=[_finding(finding) for finding in plan.findings],
+        findings=[finding.told("/leg") for finding in plan.findings],
         cautions=list(plan.cautions),
-    )
-
-
-def _manoeuvres(plan: LegPlan) -> list[Manoeuvre]:
-    """Tell the manoeuvres with their times since the first place of the leg."""
-    told: list[Manoeuvre] = []
-    time = 0.0
-    for manoeuvre in plan.manoeuvres:
-        time += manoeuvre.coast_before
-        told.append(
-            Manoeuvre(
-                name=manoeuvre.name,
-                body=manoeuvre.body,
-                place=manoeuvre.place,
-                time=time,
-                delta_v=manoeuvre.delta_v,
-                direction=None if manoeuvre.direction is None else list(manoeuvre.direction),
-                plane_change=manoeuvre.plane_change_deg,
-            )
-        )
-    return told
-
-
-def _finding(finding: PlanFinding) -> Finding:
-    """Point a finding into the request."""
-    return Finding(
-        code=finding.code,
-        severity=finding.severity,
-        message=finding.message,
-        pointer=f"/leg{finding.suffix}",
-        value=finding.value,
-        limit=finding.limit,
-        unit=finding.unit,
-        remedies=[],
     )
