@@ -1,8 +1,9 @@
 """The tally: the steps of a plan, one after another, paid out of the stack; the only place where mass changes."""
 
 import math
+from typing import Final
 
-from burntally_service.kernels.constants import G0
+from burntally_service.kernels.constants import DAY, G0
 from burntally_service.kernels.tally_books import DRY_FRACTION, load_up
 from burntally_service.kernels.tally_burns import NOTHING_OWED, pay
 from burntally_service.kernels.tally_exchange import exchange
@@ -32,8 +33,7 @@ from burntally_service.kernels.tally_stack import cause_of
 
 __all__ = ["tally"]
 
-SECONDS_PER_DAY = 86400.0
-SLOWEST_EXHAUST = G0
+SLOWEST_EXHAUST: Final = G0
 """Exhaust speed at the contract's least specific impulse, 1 s [m/s]."""
 
 
@@ -194,7 +194,7 @@ def _coast(tables: Tables, books: Books, leg: int, duration: float) -> None:
         row = tables.loads[load]
         if books.where[row.stage] != branch or books.usable[load] <= 0.0:
             continue
-        kg = min(books.usable[load], row.boiloff_per_day * (duration / SECONDS_PER_DAY))
+        kg = min(books.usable[load], row.boiloff_per_day * (duration / DAY))
         dried = 1.0 if kg == books.usable[load] else 0.0
         mass, clock = books.branch_mass[branch], books.branch_clock[branch]
         write_line(books, (LINE_BOILED, leg, load), (0.0, 0.0, kg, mass, clock, dried, 0.0))

@@ -20,7 +20,7 @@ from burntally_service.kernels.tally_rows import (
 )
 from burntally_service.kernels.tally_stack import shed
 
-__all__ = ["NOTHING_OWED", "burn_out", "pay"]
+__all__ = ["NOTHING_OWED", "UNBALANCED_FRACTION", "burn_out", "pay"]
 
 UNBALANCED_FRACTION: Final = 0.005
 """A load of a mixture left over by more than this share of what was loaded is told."""

@@ -6,11 +6,9 @@ from dataclasses import dataclass
 from burntally.model.vehicle import Engine, Stage
 from burntally_service.kernels.nozzle import exit_area, thrust_in_air
 from burntally_service.kernels.rocket import burn_time, exhaust_speed, mass_flow
+from burntally_service.kernels.tally_books import DRY_FRACTION
 
 __all__ = ["Interval", "LitEngine", "burn_down", "main_engines"]
-
-# A load below this share of what was loaded is dry; rounding leaves less than that.
-_DRY_FRACTION = 1e-9
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -109,7 +107,7 @@ def burn_down(usable: Sequence[float], engines: Sequence[LitEngine]) -> tuple[li
         What is left of the usable propellant of each load, [kg].
     """
     left = list(usable)
-    dry = [_DRY_FRACTION * mass for mass in usable]
+    dry = [DRY_FRACTION * mass for mass in usable]
     intervals: list[Interval] = []
     burning = _burning(engines, left, dry)
     while burning:

@@ -15,13 +15,11 @@ from burntally_service.kernels.rocket import (
     specific_impulse,
     thrust_to_weight,
 )
+from burntally_service.kernels.tally_burns import UNBALANCED_FRACTION
 from burntally_service.vehicle.burndown import Interval, LitEngine, burn_down, main_engines
 from burntally_service.vehicle.masses import dry_mass_of, payload_mass_of
 
 __all__ = ["performance_of"]
-
-# A load that keeps more than this share when its mixture is out is told.
-_UNBALANCED = 0.005
 
 _IDEAL = Caution(
     code="ideal-delta-v",
@@ -210,7 +208,7 @@ def _feed_findings(item: _Stacked, engines: Sequence[LitEngine], left: Sequence[
     for engine in engines:
         load = max((load for load, _ in engine.feeds), key=left.__getitem__)
         stated = item.stage.propellants[load]
-        limit = _UNBALANCED * stated.mass
+        limit = UNBALANCED_FRACTION * stated.mass
         if left[load] > limit:
             message = f"{engine.name} goes out with {left[load]:.6g} kg of {stated.name} left"
             pointer = f"/vehicle/stages/{item.index}/engines/{engine.index}/feeds"
