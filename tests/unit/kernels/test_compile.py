@@ -11,7 +11,8 @@ import numpy as np
 import pytest
 
 from burntally_service.kernels import rocket
-from burntally_service.kernels._compile import cache_directory, compiled, kernel_digest, records
+from burntally_service.kernels._compile import cache_directory, compiled, kernel_digest
+from burntally_service.kernels._records import records
 from burntally_service.kernels.rocket import exhaust_speed, mixed_exhaust_speed
 
 

@@ -9,16 +9,12 @@ import os
 import sys
 import tempfile
 import threading
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterator
 from pathlib import Path
 from types import FunctionType
-from typing import TYPE_CHECKING, Any, Final, NamedTuple, ParamSpec, TypeGuard, TypeVar, cast
+from typing import Any, Final, ParamSpec, TypeGuard, TypeVar, cast
 
-if TYPE_CHECKING:
-    import numpy as np
-    from numpy.typing import NDArray
-
-__all__ = ["cache_directory", "compiled", "kernel_digest", "records"]
+__all__ = ["cache_directory", "compiled", "kernel_digest"]
 
 _P = ParamSpec("_P")
 _R = TypeVar("_R")
@@ -71,7 +67,7 @@ def compiled(kernel: Callable[_P, _R]) -> Callable[_P, _R]:
     -------
     callable
         The twin. It takes floats, named tuples of floats, float64 arrays in place of sequences of floats, and
-        structured arrays (see `records`) in place of sequences of rows.
+        structured arrays (see `_records`) in place of sequences of rows.
 
     Raises
     ------
@@ -89,36 +85,6 @@ def compiled(kernel: Callable[_P, _R]) -> Callable[_P, _R]:
         raise TypeError(message)
     with _lock:
         return cast("Callable[_P, _R]", _twin(kernel))
-
-
-def records(row_type: type[tuple[Any, ...]], rows: Sequence[tuple[Any, ...]]) -> "NDArray[np.void]":
-    """Rows of floats as the structured array that compiled kernels read, field by field.
-
-    Parameters
-    ----------
-    row_type : type
-        Named tuple whose fields are all floats.
-    rows : sequence of row_type
-        The rows; may be empty.
-
-    Returns
-    -------
-    numpy.ndarray
-        Shape (len(rows),), one float64 field for each field of `row_type`, in its order.
-
-    Examples
-    --------
-    >>> from typing import NamedTuple
-    >>> class Point(NamedTuple):
-    ...     x: float
-    ...     y: float
-    >>> records(Point, [Point(1.0, 2.0)])[0]["y"]
-    np.float64(2.0)
-    """
-    import numpy as np
-
-    layout = np.dtype([(field, np.float64) for field in cast("type[NamedTuple]", row_type)._fields])
-    return np.array([tuple(row) for row in rows], dtype=layout)
 
 
 @functools.cache

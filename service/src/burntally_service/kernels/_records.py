@@ -1,4 +1,4 @@
-"""Tables and books as single records, for the compiled gear.
+"""What the compiled gear takes in place of rows: structured arrays, and tables and books as single records.
 
 A compiled function that takes dozens of arrays takes minutes to compile and longer to call than to run, so all rows of
 a design stand in one record, and all its books in another: each is passed as one pointer. Their room is a power of
@@ -8,6 +8,7 @@ two, so that designs of about one size share the compiled code.
 from __future__ import annotations
 
 import functools
+from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any, Final, get_args, get_type_hints
 
 from burntally_service.kernels.tally_rows import BLANK, LINE_WIDTH, Books, Tables
@@ -16,13 +17,42 @@ if TYPE_CHECKING:
     import numpy as np
     from numpy.typing import NDArray
 
-__all__ = ["books_record", "flat_cells", "room_of", "tables_record"]
+__all__ = ["books_record", "flat_cells", "records", "room_of", "tables_record"]
 
 _LEAST_ROOM: Final = 64
 """Room for as many rows of every kind as a common design has."""
 
 _ROWS_PER_ROOM: Final = {"burner_of": 8, "last_named": 8, "steps": 4, "items": 4, "lit": 4}
 _BOOKS_PER_ROOM: Final = {"rule_sum": 16, "count": 1, "added": 1}
+
+
+def records(row_type: type[tuple[Any, ...]], rows: Sequence[tuple[Any, ...]]) -> NDArray[np.void]:
+    """Rows of floats as the structured array that compiled kernels read, field by field.
+
+    Parameters
+    ----------
+    row_type : type
+        Named tuple whose fields are all floats.
+    rows : sequence of row_type
+        The rows; may be empty.
+
+    Returns
+    -------
+    numpy.ndarray
+        Shape (len(rows),), one float64 field for each field of `row_type`, in its order.
+
+    Examples
+    --------
+    >>> from typing import NamedTuple
+    >>> class Point(NamedTuple):
+    ...     x: float
+    ...     y: float
+    >>> records(Point, [Point(1.0, 2.0)])[0]["y"]
+    np.float64(2.0)
+    """
+    import numpy as np
+
+    return np.array([tuple(row) for row in rows], dtype=_row_layout(row_type))
 
 
 def room_of(tables: Tables) -> int:
@@ -46,11 +76,10 @@ def _scalar(hint: object) -> str:
 
 @functools.cache
 def _row_layout(row_type: type[Any]) -> np.dtype[Any]:
-    """Layout of one row: eight bytes a field, in the order of the struct."""
+    """Layout of one row, a struct or a named tuple: eight bytes a field, in its order."""
     import numpy as np
 
-    hints = get_type_hints(row_type)
-    return np.dtype([(name, _scalar(hints[name])) for name in row_type.__struct_fields__])
+    return np.dtype([(name, _scalar(hint)) for name, hint in get_type_hints(row_type).items()])
 
 
 @functools.cache
