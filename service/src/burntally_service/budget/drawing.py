@@ -16,7 +16,8 @@ from burntally_service.haste import NeedsTimeError
 from burntally_service.kernels import tally_rows as rows
 from burntally_service.kernels.tally import tally
 from burntally_service.kernels.tally_books import blank_books
-from burntally_service.kernels.tally_slack import slack_by_search, slacks
+from burntally_service.kernels.tally_search import slack_by_search
+from burntally_service.kernels.tally_slack import slacks
 from burntally_service.legs.orbit import check_start
 
 __all__ = ["Drawn", "Line", "Lit", "draw", "stage_pointer"]

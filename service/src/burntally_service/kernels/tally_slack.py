@@ -1,17 +1,15 @@
 """Slack: the most that could be added at the end of a leg, with every charge of its branch still paid (rule M).
 
-The closed form walks the ledger backward with the mass that a stage could lose and still pay what follows. Where an
-addition would hand over to another stage, or change what another stage pays in between, it is searched for instead,
-over the books themselves.
+The walk goes backward over the ledger with the mass that each stage could lose and still pay what follows. Where that
+stage would run dry and drop, and the one above it could go on at no cost, what that one could add comes on top. Any
+other handover, and whatever changes what another stage pays in between, has no closed form: such a mark is left to
+`tally_search`.
 """
 
 import math
 from typing import Final
 
-from burntally_service.kernels.tally import tally
-from burntally_service.kernels.tally_books import wipe
 from burntally_service.kernels.tally_rows import (
-    ADD_AT,
     DELTA_V,
     KG,
     KIND,
@@ -36,19 +34,10 @@ from burntally_service.kernels.tally_rows import (
     Tables,
 )
 
-__all__ = ["owed_with", "slack_by_search", "slacks"]
+__all__ = ["slacks"]
 
 SEARCH: Final = -1.0
 """Mark of a slack that the closed form cannot tell."""
-
-MOST: Final = 1e6
-"""No more than this is ever added [m/s]: the contract's bound on a delta-v."""
-
-TOLERANCE: Final = 1e-10
-"""Width of the bracket at which the search ends, as a share of the slack."""
-
-MOST_TRIES: Final = 200
-"""The search halves its bracket at worst, and a bracket of 1e6 m/s needs 54 halvings."""
 
 # Rows of the walk: slack by mark, then by stage its state, reach, mask and tail, then the draw walked last.
 STATE: Final = 1
@@ -58,7 +47,8 @@ TAIL: Final = 4
 LAST: Final = 5
 
 # States of a stage on the walk back: it draws no more; it draws no more while another does; it draws; it draws
-# together with others, so that its reach is no longer its own.
+# together with others. Only a stage that draws alone has a reach of its own, because what another one draws depends on
+# the mass that this one has lost by then.
 NOTHING: Final = 0.0
 BUSY: Final = 1.0
 KNOWN: Final = 2.0
@@ -127,7 +117,7 @@ def _slack_at(books: Books, walk: list[list[float]], mark: int) -> float:
         return 0.0
     state = walk[STATE][stage]
     reach = books.spare[mark]
-    if state == MIXED or (state == KNOWN and walk[MASKS][stage] != books.spare_mask[mark]):
+    if _is_mixed(walk, stage, books.spare_mask[mark]):
         return SEARCH
     if state == KNOWN and walk[REACH][stage] <= reach:
         reach = walk[REACH][stage]
@@ -140,6 +130,11 @@ def _slack_at(books: Books, walk: list[list[float]], mark: int) -> float:
     return books.spare_speed[mark] * math.log(mass / (mass - reach)) + tail
 
 
+def _is_mixed(walk: list[list[float]], stage: int, mask: float) -> bool:
+    """Tell whether the reach of a stage is not its own, or was learnt with other engines lit than now."""
+    return walk[STATE][stage] == MIXED or (walk[STATE][stage] == KNOWN and walk[MASKS][stage] != mask)
+
+
 def _tail_after(books: Books, walk: list[list[float]], mark: int, state: float) -> float:
     """Delta-v that the next stage could add if the payer of a mark ran dry and dropped there; -1 if unclear."""
     if books.spare_more[mark] == NO_MORE:
@@ -147,12 +142,11 @@ def _tail_after(books: Books, walk: list[list[float]], mark: int, state: float) 
     if books.spare_more[mark] == UNCLEAR or state == BUSY:
         return SEARCH
     stage = books.next_stage[mark]
-    following = walk[STATE][stage]
     reach = books.next_spare[mark]
     tail = 0.0
-    if following == MIXED or (following == KNOWN and walk[MASKS][stage] != books.next_mask[mark]):
+    if _is_mixed(walk, stage, books.next_mask[mark]):
         return SEARCH
-    if following == KNOWN and walk[REACH][stage] <= reach:
+    if walk[STATE][stage] == KNOWN and walk[REACH][stage] <= reach:
         reach = walk[REACH][stage]
         tail = walk[TAIL][stage]
     if tail < 0.0:
@@ -215,10 +209,10 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
     drawer = tables.burners[int(lines[start + PART])].stage
     mask = lines[start + MASK]
     spare = lines[start + SPARE]
-    state = walk[STATE][drawer]
-    if state == KNOWN and walk[MASKS][drawer] != mask:
-        state = MIXED
+    if _is_mixed(walk, drawer, mask):
+        # Other engines draw on the loads in other shares, so kilograms of one set are none of the other.
         walk[STATE][drawer] = MIXED
+    state = walk[STATE][drawer]
     if state <= BUSY or (state == KNOWN and spare < walk[REACH][drawer]):
         walk[STATE][drawer] = KNOWN
         walk[REACH][drawer] = spare
@@ -250,23 +244,33 @@ def _mix_others(tables: Tables, walk: list[list[float]], drawer: int) -> None:
 def _tail_of(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int, int, float]) -> float:
     """Delta-v that later stages could add if a stage ran dry in a draw; -1 if that is not clear."""
     start, mark, drawer, state = at
-    last = walk[LAST]
-    following = int(last[0])
-    lines = books.lines
-    if lines[start + SPARE] == 0.0 and following not in (-1, drawer) and last[1] == lines[start + LEG]:
-        # Another stage did go on, right here, and its own lines have just been walked.
-        known = last[3] >= 0.0 and last[4] >= 0.0 and books.spare_stage[mark] == following
-        if not known or not _is_plain(tables, books, following, drawer):
-            return SEARCH
-        return books.spare_speed[mark] * math.log(last[2] / (last[2] - last[3])) + last[4]
+    if _has_gone_on(books, walk[LAST], start, drawer):
+        return _tail_walked(tables, books, walk[LAST], (mark, drawer))
     if books.spare_stage[mark] < 0:
         return 0.0
-    if books.spare_stage[mark] != drawer or books.spare_mask[mark] != int(lines[start + MASK]):
+    if books.spare_stage[mark] != drawer or books.spare_mask[mark] != int(books.lines[start + MASK]):
         return SEARCH
     tail = _tail_after(books, walk, mark, state)
     if tail > 0.0 and not _is_plain(tables, books, books.next_stage[mark], drawer):
         return SEARCH
     return tail
+
+
+def _has_gone_on(books: Books, last: list[float], start: int, drawer: int) -> bool:
+    """Tell whether a draw ran its stage dry and another stage went on in the same leg."""
+    following = int(last[0])
+    in_leg = last[1] == books.lines[start + LEG]
+    return books.lines[start + SPARE] == 0.0 and following not in (-1, drawer) and in_leg
+
+
+def _tail_walked(tables: Tables, books: Books, last: list[float], at: tuple[int, int]) -> float:
+    """Delta-v that the stage walked last could add, which did go on for the drawer; -1 if that is not clear."""
+    mark, drawer = at
+    following = int(last[0])
+    known = last[3] >= 0.0 and last[4] >= 0.0 and books.spare_stage[mark] == following
+    if not known or not _is_plain(tables, books, following, drawer):
+        return SEARCH
+    return books.spare_speed[mark] * math.log(last[2] / (last[2] - last[3])) + last[4]
 
 
 def _is_plain(tables: Tables, books: Books, stage: int, before: int) -> bool:
@@ -280,105 +284,3 @@ def _is_plain(tables: Tables, books: Books, stage: int, before: int) -> bool:
         if fitted.loss_per_ignition > 0.0 or books.used[engine] + more > fitted.max_ignitions:
             return False
     return True
-
-
-def owed_with(tables: Tables, scratch: Books, mark: int, added: float) -> float:
-    """What the branch of a leg would owe if a delta-v were added at its end.
-
-    Parameters
-    ----------
-    tables : Tables
-        What is tallied.
-    scratch : Books
-        Books to use; changed.
-    mark : int
-        Index of the leg; the number of legs plus the branch for a reserve, [-].
-    added : float
-        Delta-v added, [m/s].
-
-    Returns
-    -------
-    float
-        Sum owed in the branch, [m/s].
-
-    References
-    ----------
-    .. [1] The project's bookkeeping rule M; no published source.
-
-    Examples
-    --------
-    >>> from burntally_service.kernels.tally_books import blank_books
-    >>> from burntally_service.kernels.tally_rows import BranchRow
-    >>> tables = Tables(*([],) * 11, [BranchRow(-1, 0.0, 0.0, 0)], [], [], n_branches=1)
-    >>> owed_with(tables, blank_books(tables, 0), 0, 1.0)
-    0.0
-    """
-    wipe(tables, scratch)
-    scratch.count[ADD_AT] = mark
-    scratch.added[0] = added
-    scratch.added[1] = 0.0
-    tally(tables, scratch)
-    legs = tables.n_legs
-    branch = tables.legs[mark].branch if mark < legs else mark - legs
-    return scratch.branch_owed[branch]
-
-
-def slack_by_search(tables: Tables, scratch: Books, mark: int) -> float:
-    """Slack of a leg, or of a reserve, found over the books themselves.
-
-    What is owed rises from zero where the slack ends, so the search comes from the owing side with secants and keeps
-    a bracket.
-
-    Parameters
-    ----------
-    tables : Tables
-        What is tallied.
-    scratch : Books
-        Books to use; changed.
-    mark : int
-        Index of the leg; the number of legs plus the branch for a reserve, [-].
-
-    Returns
-    -------
-    float
-        Slack, [m/s]; 0 if nothing can be added.
-
-    References
-    ----------
-    .. [1] The project's bookkeeping rule M; no published source.
-
-    Examples
-    --------
-    >>> from burntally_service.kernels.tally_books import blank_books
-    >>> from burntally_service.kernels.tally_rows import BranchRow
-    >>> tables = Tables(*([],) * 11, [BranchRow(-1, 0.0, 0.0, 0)], [], [], n_branches=1)
-    >>> slack_by_search(tables, blank_books(tables, 0), 0)
-    1000000.0
-    """
-    owed_with(tables, scratch, mark, MOST)
-    high = MOST - scratch.added[1]
-    owed_high = owed_with(tables, scratch, mark, high)
-    if owed_high <= 0.0:
-        return high
-    low: float = 0.0
-    guess: float = high - owed_high
-    step = 0.0
-    for _ in range(MOST_TRIES):
-        width = TOLERANCE * max(1.0, high)
-        if high - low <= width:
-            break
-        if not low < guess < high:
-            guess = 0.5 * (low + high)
-        owed = owed_with(tables, scratch, mark, guess)
-        if owed <= 0.0:
-            # The secant fell short: feel forward from there in growing steps, so that a good guess is confirmed fast.
-            low = guess
-            step = max(width, 16.0 * step)
-            guess = min(low + step, 0.5 * (low + high))
-        else:
-            slope = (owed_high - owed) / (high - guess)
-            high = guess
-            owed_high = owed
-            step = 0.0
-            guess = high - owed / slope if slope > 0.0 else 0.5 * (low + high)
-    return low
