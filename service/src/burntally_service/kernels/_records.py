@@ -11,7 +11,7 @@ import functools
 from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any, Final, get_args, get_type_hints
 
-from burntally_service.kernels.tally_rows import BLANK, LINE_WIDTH, Books, Tables
+from burntally_service.kernels.tally_rows import ADD_AT, BLANK, LINE_WIDTH, ROOM, Books, Tables
 
 if TYPE_CHECKING:
     import numpy as np
@@ -160,8 +160,8 @@ def books_record(tables: Tables, lines: int = 0) -> NDArray[np.void]:
     for name, (_, entry) in BLANK.items():
         books[name] = entry
     books["order"] = np.arange(len(books["order"]))
-    books["count"][2] = -1
-    books["count"][3] = lines
+    books["count"][ADD_AT] = -1
+    books["count"][ROOM] = lines
     return record
 
 

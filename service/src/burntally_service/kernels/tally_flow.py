@@ -2,13 +2,30 @@
 
 import math
 
-from burntally_service.kernels.tally_rows import LINE_WIDTH, LINES, ROOM, STAMP, Books, Tables
+from burntally_service.kernels.tally_rows import (
+    DELTA_V,
+    KG,
+    KIND,
+    LEG,
+    LINE_WIDTH,
+    LINES,
+    MASK,
+    MASS,
+    PART,
+    PURPOSE,
+    ROOM,
+    SPARE,
+    STAMP,
+    TIME,
+    Books,
+    Tables,
+)
 
 __all__ = ["can_burn", "light_flow", "spare_of", "wants_ignition", "write_line"]
 
 
 def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...]) -> None:
-    """Write one line of the ledger, if there is room; the count grows in any case.
+    """Write one line of the ledger, if there is room; the count grows in any case, and so tells how much was lacking.
 
     Parameters
     ----------
@@ -43,16 +60,16 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
     count[LINES] += 1
     lines = books.lines
     if count[LINES] <= count[ROOM]:
-        lines[start] = float(head[0])
-        lines[start + 1] = float(head[1])
-        lines[start + 2] = float(head[2])
-        lines[start + 3] = entry[0]
-        lines[start + 4] = entry[1]
-        lines[start + 5] = entry[2]
-        lines[start + 6] = entry[3]
-        lines[start + 7] = entry[4]
-        lines[start + 8] = entry[5]
-        lines[start + 9] = entry[6]
+        lines[start + KIND] = float(head[0])
+        lines[start + LEG] = float(head[1])
+        lines[start + PART] = float(head[2])
+        lines[start + PURPOSE] = entry[0]
+        lines[start + DELTA_V] = entry[1]
+        lines[start + KG] = entry[2]
+        lines[start + MASS] = entry[3]
+        lines[start + TIME] = entry[4]
+        lines[start + MASK] = entry[5]
+        lines[start + SPARE] = entry[6]
 
 
 def can_burn(tables: Tables, books: Books, engine: int) -> bool:
@@ -132,6 +149,7 @@ def light_flow(tables: Tables, books: Books, burner: int) -> tuple[float, float,
     """
     row = tables.burners[burner]
     place = row.stage
+    # The engines that can burn change far less often than a stage burns, so their sum is kept until they do.
     if books.flow_of[place] == burner:
         return books.flow_thrust[place], books.flow_mdot[place], books.flow_mask[place]
     stage = tables.stages[place]
