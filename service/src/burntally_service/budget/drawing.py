@@ -1,6 +1,7 @@
 """Drawing up: resolve, plan, lower, tally; what the books say, before it is explained."""
 
-from collections.abc import Mapping
+import itertools
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
 from msgspec import Struct
@@ -207,18 +208,23 @@ def _newly_started(design: Design, lowered: Lowered, lines: list[Line]) -> tuple
 
     What leaves together starts the first branch that is of any part of it.
     """
-    place = 0
-    while place < len(lines):
-        end = place + 1
-        if lines[place].kind == rows.LINE_SEPARATION:
-            while end < len(lines) and lines[end].kind == lines[place].kind and lines[end].leg == lines[place].leg:
-                end += 1
-            group = {lowered.stages[line.part].name for line in lines[place:end]}
-            for index, branch in enumerate(design.mission.branches):
-                if lines[place].purpose < 0 and branch.of in group and lowered.branches[index + 1] is None:
-                    return index + 1, _handoff(lowered, lines, place)
-        place = end
+    for place, end in _separations(lines):
+        group = {lowered.stages[line.part].name for line in lines[place:end]}
+        for index, branch in enumerate(design.mission.branches):
+            # What is flown by a branch already, the tally has moved there itself.
+            if lines[place].purpose == rows.NOT_FLOWN and branch.of in group and lowered.branches[index + 1] is None:
+                return index + 1, _handoff(lowered, lines, place)
     return None
+
+
+def _separations(lines: list[Line]) -> Iterator[tuple[int, int]]:
+    """Yield where each group of parts that leave together begins in the ledger, and where it ends."""
+    place = 0
+    for (kind, _), group in itertools.groupby(lines, key=lambda line: (line.kind, line.leg)):
+        end = place + len(list(group))
+        if kind == rows.LINE_SEPARATION:
+            yield place, end
+        place = end
 
 
 def _handoff(lowered: Lowered, lines: list[Line], place: int) -> Handoff:
@@ -236,6 +242,14 @@ def _handoff(lowered: Lowered, lines: list[Line], place: int) -> Handoff:
     return Handoff(location=row.plan.end if settled else None, elapsed=line.time, left_in=left_in)
 
 
+def _has_slack(tables: rows.Tables, books: rows.Books, mark: int) -> bool:
+    """Tell whether a leg, or a reserve counted after the legs, is charged in a branch that started and owes nothing."""
+    legs = len(tables.legs)
+    branch = tables.legs[mark].branch if mark < legs else mark - legs
+    charged = tables.legs[mark].charged if mark < legs else books.reserve[branch] > 0.0
+    return bool(charged and books.branch_started[branch] and books.branch_owed[branch] <= 0.0)
+
+
 def _slack(lowered: Lowered, books: rows.Books, *, in_haste: bool) -> list[float | None]:
     """Slack by leg, then by branch for its reserve; none in a branch that owes."""
     tables = lowered.tables
@@ -245,9 +259,7 @@ def _slack(lowered: Lowered, books: rows.Books, *, in_haste: bool) -> list[float
     found: list[float | None] = [None] * (legs + branches)
     scratch = None
     for mark in range(legs + branches):
-        branch = tables.legs[mark].branch if mark < legs else mark - legs
-        has_one = tables.legs[mark].charged if mark < legs else books.reserve[branch] > 0.0
-        if not has_one or books.branch_owed[branch] > 0.0 or not books.branch_started[branch]:
+        if not _has_slack(tables, books, mark):
             continue
         slack = walk[0][mark]
         if slack < 0.0 and in_haste:

@@ -15,7 +15,6 @@ __all__ = ["Lowered", "lower"]
 
 _Account = tuple[tuple[str, ...], tuple[str, ...]]
 
-
 _OVER = -1
 """Stands for the end of a branch where a leg of it is asked for."""
 
@@ -76,13 +75,7 @@ def lower(vehicle: Vehicle, rules: Rules, branches: Sequence[BranchPlan | None])
     Lowered
         The tables and the names of their rows.
     """
-    taken = [
-        row.leg.payload
-        for plan in branches
-        for row in (plan.legs if plan else ())
-        if isinstance(row.leg, TakeOn) and row.leg.payload is not None
-    ]
-    draft = _Draft(vehicle, rules, [*vehicle.payloads, *taken], branches)
+    draft = _Draft(vehicle, rules, [*vehicle.payloads, *_taken_on(branches)], branches)
     draft.stage_index = {stage.name: index for index, stage in enumerate(vehicle.stages)}
     for index, stage in enumerate(vehicle.stages):
         _lower_stage(draft, index, stage)
@@ -93,6 +86,16 @@ def lower(vehicle: Vehicle, rules: Rules, branches: Sequence[BranchPlan | None])
         _emit_after_parent(draft, branch)
         _emit_branch(draft, branch)
     return _finished(draft)
+
+
+def _taken_on(branches: Sequence[BranchPlan | None]) -> list[Payload]:
+    """List the payloads that legs take on, which have rows from the start: the tally cannot add any."""
+    return [
+        row.leg.payload
+        for plan in branches
+        for row in (plan.legs if plan else ())
+        if isinstance(row.leg, TakeOn) and row.leg.payload is not None
+    ]
 
 
 def _lower_items(draft: _Draft, part: int, masses: MassList, growth: tuple[float | None, float]) -> None:

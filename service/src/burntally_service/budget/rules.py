@@ -8,6 +8,9 @@ from burntally_service.budget.presets import preset_rules
 
 __all__ = ["no_rule", "resolve", "rule_for"]
 
+_FALLING_BACK = ("mass_growth", "mass_contingency", "residual_fraction", "reserve")
+"""Rules that are the preset's unless they are stated, be it as zero."""
+
 
 def resolve(rules: Rules, *, pointer: str = "/rules") -> Rules:
     """Fill a preset into rules: a stated rule replaces the preset's rule of the same category whole.
@@ -47,12 +50,9 @@ def resolve(rules: Rules, *, pointer: str = "/rules") -> Rules:
     return structs.replace(
         rules,
         contingency=[*rules.contingency, *inherited],
-        mass_growth=preset.mass_growth if rules.mass_growth is None else rules.mass_growth,
-        mass_contingency=preset.mass_contingency if rules.mass_contingency is None else rules.mass_contingency,
-        residual_fraction=preset.residual_fraction if rules.residual_fraction is None else rules.residual_fraction,
         growth_table=rules.growth_table or preset.growth_table,
-        reserve=preset.reserve if rules.reserve is None else rules.reserve,
         limits=_merged_limits(rules.limits, preset.limits),
+        **{name: getattr(preset, name) for name in _FALLING_BACK if getattr(rules, name) is None},
     )
 
 

@@ -72,11 +72,8 @@ def _tabulated(item: MassItem, rules: Rules) -> float | None:
     if item.maturity is None:
         return None
     rows = [row for row in rules.growth_table if row.maturity == item.maturity]
-    if item.class_ is not None:
+    for class_ in (item.class_, None):
         for row in rows:
-            if row.class_ == item.class_:
+            if row.class_ == class_:
                 return row.growth
-    for row in rows:
-        if row.class_ is None:
-            return row.growth
     return None
