@@ -11,6 +11,8 @@ from burntally_service.kernels import tally_rows as rows
 
 __all__ = ["limit_findings", "overfilled"]
 
+_ROUNDING = 1e-12
+
 
 def _limit(drawn: Drawn, name: str) -> float | None:
     """A limit of the rules; None where there is none or it was lifted."""
@@ -73,7 +75,6 @@ def _passed(drawn: Drawn, leg: int, what: tuple[str, str, str], numbers: tuple[f
     name, code, unit = what
     value, limit = numbers
     branch, row = drawn.lowered.legs[leg]
-    plan = drawn.branches[branch]
     return Finding(
         code=code,
         severity="error",
@@ -82,7 +83,7 @@ def _passed(drawn: Drawn, leg: int, what: tuple[str, str, str], numbers: tuple[f
         value=value,
         limit=limit,
         unit=unit,
-        branch=plan.name if plan else "",
+        branch=drawn.branch_name(branch),
         leg=row.index if row else None,
         remedies=[],
     )
@@ -137,7 +138,6 @@ def _first_thrust_to_weight(drawn: Drawn, leg: int, row: PlannedLeg) -> float | 
 
 def _cannot_lift(drawn: Drawn, leg: int, row: PlannedLeg, value: float) -> Finding:
     """The finding of a stack that stays on the ground."""
-    plan = drawn.branches[drawn.lowered.legs[leg][0]]
     return Finding(
         code="cannot-lift-off",
         severity="error",
@@ -145,7 +145,7 @@ def _cannot_lift(drawn: Drawn, leg: int, row: PlannedLeg, value: float) -> Findi
         pointer=row.pointer,
         value=value,
         limit=1.0,
-        branch=plan.name if plan else "",
+        branch=drawn.branch_name(drawn.lowered.legs[leg][0]),
         leg=row.index,
         remedies=[],
     )
@@ -163,7 +163,8 @@ def overfilled(drawn: Drawn) -> Iterator[Finding]:
     for load, kg in highest.items():
         capacity = drawn.lowered.tables.loads[load].capacity
         limit = capacity if share is None else share * capacity
-        if kg > limit * (1.0 + 1e-12):
+        # A load stated as share times capacity may lie above it by a rounding, and is no more than may be loaded.
+        if kg > limit * (1.0 + _ROUNDING):
             stage, place = drawn.lowered.loads[load]
             model = drawn.lowered.stages[stage]
             yield Finding(
@@ -171,7 +172,7 @@ def overfilled(drawn: Drawn) -> Iterator[Finding]:
                 severity="error",
                 message=f"{kg:.6g} kg of {model.propellants[place].name} in {model.name} pass the "
                 f"{limit:.6g} kg that may be loaded",
-                pointer=f"/vehicle/stages/{stage}/propellants/{place}/mass",
+                pointer=f"{drawn.load_pointer(load)}/mass",
                 value=kg,
                 limit=limit,
                 unit="kg",

@@ -29,7 +29,6 @@ class Handoff(Struct, frozen=True, kw_only=True):
     location: Location | None
     elapsed: float
     left_in: tuple[int, int] = (0, -1)
-    stated_ascent: bool = False
 
 
 class PlannedLeg(Struct, frozen=True, kw_only=True):

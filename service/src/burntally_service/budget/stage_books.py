@@ -10,7 +10,7 @@ from burntally_service.kernels.tally_burns import burn_out
 from burntally_service.legs.epochs import epoch_after
 from burntally_service.vehicle.masses import dry_mass_of
 
-__all__ = ["deliveries", "left_behind", "separation_of", "stage_books", "stage_left_behind"]
+__all__ = ["deliveries", "left_behind", "stage_books", "stage_left_behind"]
 
 
 def stage_books(drawn: Drawn) -> list[StageBook]:
@@ -62,7 +62,7 @@ def _load_book(drawn: Drawn, load: int) -> LoadBook:
     )
 
 
-def separation_of(drawn: Drawn, stage: int) -> Line | None:
+def _separation_of(drawn: Drawn, stage: int) -> Line | None:
     """The line in which a stage left its first stack; None if it stayed."""
     for line in drawn.lines:
         if line.kind == rows.LINE_SEPARATION and line.part == stage:
@@ -89,13 +89,12 @@ def stage_left_behind(drawn: Drawn, stage: int) -> float:
 
 def _separated(drawn: Drawn, stage: int) -> Separated | None:
     """Where and when a stage left."""
-    line = separation_of(drawn, stage)
+    line = _separation_of(drawn, stage)
     if line is None:
         return None
     branch, row = drawn.lowered.legs[line.leg]
-    plan = drawn.branches[branch]
     return Separated(
-        branch=plan.name if plan else "main",
+        branch=drawn.branch_name(branch),
         leg=row.index if row else 0,
         time=line.time,
         left_behind=stage_left_behind(drawn, stage),
@@ -133,14 +132,13 @@ def deliveries(drawn: Drawn) -> list[Delivery]:
     """Payloads released, in order."""
     delivered: list[Delivery] = []
     for line in drawn.lines:
-        row = drawn.lowered.legs[line.leg][1]
+        branch, row = drawn.lowered.legs[line.leg]
         if line.kind == rows.LINE_RELEASE and row is not None:
-            plan = drawn.branches[drawn.lowered.legs[line.leg][0]]
             delivered.append(
                 Delivery(
                     name=drawn.part_name(len(drawn.lowered.stages) + line.part),
                     mass=line.kg,
-                    branch=plan.name if plan else "main",
+                    branch=drawn.branch_name(branch),
                     leg=row.index,
                     location=row.start,
                     epoch=epoch_after(drawn.design.mission.epoch, line.time),
