@@ -110,6 +110,7 @@ def least_change(change: Change, owed: Callable[[float], float]) -> float | None
     owed_short = owed(short)
     guess = 0.5 * (short + enough) if enough < short else min(2.0 * short, 0.5 * (short + enough))
     for tries in range(_MOST_TRIES):
+        # Rounded before it is tried, since the number that is told must be one that was found to be enough.
         guess = _rounded(guess, up=enough > short)
         if (guess - short) * (guess - enough) >= 0.0:
             guess = _rounded(0.5 * (short + enough), up=enough > short)
@@ -119,9 +120,11 @@ def least_change(change: Change, owed: Callable[[float], float]) -> float | None
         if owed_guess > 0.0:
             slope = (owed_short - owed_guess) / (guess - short)
             short, owed_short = guess, owed_guess
+            # A secant that falls short forever would creep; every fourth try halves instead.
             guess = short + owed_short / slope if slope * (enough - short) > 0.0 and tries % 4 else enough
         else:
             enough = guess
+            # A secant lands close above the least value, so that is felt for just below before the rest is halved.
             guess = short + (enough - short) * 0.9 if tries % 2 else 0.5 * (short + enough)
     return enough
 

@@ -40,12 +40,14 @@ class _Bench:
 
     def draw(self, pointer: str, value: object, *, with_slack: bool = False) -> Drawn | None:
         """Draw up the design with one field changed; None if it cannot be computed, or the work is used up."""
+        # Steps and no clock, so that a design has the same remedies on every machine.
         self.spent += self.steps
         if self.spent > _MOST_STEPS_TALLIED:
             return None
         try:
             return draw(with_value(self.design, pointer, value), with_slack=with_slack, memo=self.memo)
         except BurntallyError:
+            # A design that cannot be computed mends nothing, and the search goes on from the other side.
             return None
 
 
@@ -75,21 +77,24 @@ def with_remedies(drawn: Drawn, findings: list[Finding], *, in_haste: bool = Fal
         raise NeedsTimeError
     bench = _Bench(drawn.design, drawn.memo, len(drawn.lowered.tables.steps))
     by_branch: dict[str, list[Remedy]] = {}
-    mended: list[Finding] = []
-    for finding in findings:
-        if finding.code not in _SHORT:
-            mended.append(finding)
-            continue
-        remedies = list(_attempts(drawn, finding, bench, _AT_ONCE))
-        if finding.code in _OWING and finding.branch is not None:
-            if finding.branch not in by_branch:
-                by_branch[finding.branch] = _owed_remedies(drawn, finding.branch, None, bench)
-            remedies += by_branch[finding.branch]
-        # To ask or to hold less is told only where nothing else helps, and to leave something out last of all.
-        remedies = remedies or list(_attempts(drawn, finding, bench, _ELSE)) or _for_itself(drawn, finding, bench)
-        remedies = remedies or list(_left_out(drawn, finding, bench))
-        mended.append(structs.replace(finding, remedies=remedies[:_MOST_TOLD]))
-    return mended
+    return [
+        structs.replace(finding, remedies=_remedies_of(drawn, finding, bench, by_branch)[:_MOST_TOLD])
+        if finding.code in _SHORT
+        else finding
+        for finding in findings
+    ]
+
+
+def _remedies_of(drawn: Drawn, finding: Finding, bench: _Bench, by_branch: dict[str, list[Remedy]]) -> list[Remedy]:
+    """What mends one shortfall; `by_branch` keeps what was found for its branch, which all its legs share."""
+    remedies = list(_attempts(drawn, finding, bench, _AT_ONCE))
+    if finding.code in _OWING and finding.branch is not None:
+        if finding.branch not in by_branch:
+            by_branch[finding.branch] = _owed_remedies(drawn, finding.branch, None, bench)
+        remedies += by_branch[finding.branch]
+    # To ask or to hold less is told only where nothing else helps, and to leave something out last of all.
+    remedies = remedies or list(_attempts(drawn, finding, bench, _ELSE)) or _for_itself(drawn, finding, bench)
+    return remedies or list(_left_out(drawn, finding, bench))
 
 
 def _owed_remedies(drawn: Drawn, name: str, leg: int | None, bench: _Bench) -> list[Remedy]:
