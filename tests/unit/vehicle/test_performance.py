@@ -4,10 +4,13 @@ import math
 
 import pytest
 
+from burntally.model.design import Design
 from burntally.model.errors import UncomputableError
+from burntally.model.mission import Coast, Mission, OrbitLocation
 from burntally.model.operations import Performance, PerformanceRequest
 from burntally.model.rules import Rules
 from burntally.model.vehicle import Engine, Load, Payload, Stage, Vehicle
+from burntally_service.budget import draw_up
 from burntally_service.kernels.constants import G0
 from burntally_service.vehicle.performance import performance_of
 
@@ -158,3 +161,16 @@ class TestMixtures:
     def test_unlike_engines_mix_by_their_flows(self) -> None:
         engines = [Engine(name="a", thrust=2e6, isp=280.0), Engine(name="b", thrust=1e6, isp=430.0)]
         assert performance(two_stages(engines=engines)).stages[0].phases[0].isp == pytest.approx(316.8421, rel=1e-6)
+
+
+def test_a_budget_tells_the_same_of_each_stage() -> None:
+    mixture = [Load(mass=6000.0, name="ox"), Load(mass=3000.0, name="fuel", residual_fraction=0.02)]
+    unlike = [
+        Engine(name="big", thrust=1e5, isp=300.0, feeds={"ox": 2.3, "fuel": 1.0}),
+        Engine(name="small", thrust=2e4, isp=230.0, feeds={"fuel": 1.0}),
+    ]
+    vehicle = two_stages(loads=mixture, engines=unlike)
+    mission = Mission(start=OrbitLocation(body="earth", altitude=3e5), legs=[Coast(duration=1.0)])
+    budget = draw_up(Design(format=1, vehicle=vehicle, mission=mission))
+    told = [stage.delta_v_vacuum for stage in performance(vehicle).stages]
+    assert [stage.delta_v.capability for stage in budget.stages] == pytest.approx(told, rel=1e-12, abs=0.0)

@@ -17,7 +17,8 @@ __all__ = ["OPEN_ACCOUNT", "BranchPlan", "Handoff", "PlanMemo", "PlannedLeg", "c
 PlanMemo = dict[tuple[int, Location | None, float, str | None], tuple[Leg, LegPlan]]
 """Plans by the identity of the leg and where and when it starts; the leg is kept, so that its identity is not reused.
 
-A design that is changed in one field shares all other legs, and its copies are drawn up many times for remedies.
+By identity, since a leg holds lists and cannot be hashed; and it serves, since a design that is changed in one field
+shares all other legs, and its copies are drawn up many times for remedies.
 """
 
 OPEN_ACCOUNT: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())

@@ -3,7 +3,7 @@
 from collections.abc import Iterator
 
 from burntally.model.budget import Finding
-from burntally.model.mission import OrbitLocation, TakeOn
+from burntally.model.mission import Location, OrbitLocation, TakeOn
 from burntally_service.budget.drawing import Drawn, Line, stage_pointer
 from burntally_service.budget.leg_books import load_name
 from burntally_service.budget.plan import PlannedLeg
@@ -150,8 +150,7 @@ def _docking(drawn: Drawn) -> Iterator[Finding]:
     for branch, plan in enumerate(drawn.branches):
         for row in plan.legs if plan else ():
             docked = row.leg.branch if isinstance(row.leg, TakeOn) else None
-            other = ends.get(docked) if docked else None
-            if isinstance(other, OrbitLocation) and isinstance(row.start, OrbitLocation) and _differ(other, row.start):
+            if docked and _lie_apart(ends.get(docked), row.start):
                 yield Finding(
                     code="orbit-mismatch",
                     severity="error",
@@ -163,8 +162,10 @@ def _docking(drawn: Drawn) -> Iterator[Finding]:
                 )
 
 
-def _differ(one: OrbitLocation, other: OrbitLocation) -> bool:
-    """Tell whether two orbits differ in anything that both of them tell."""
+def _lie_apart(one: Location | None, other: Location | None) -> bool:
+    """Tell whether two locations are orbits that differ in anything that both of them tell."""
+    if not isinstance(one, OrbitLocation) or not isinstance(other, OrbitLocation):
+        return False
     if one.body != other.body:
         return True
     for name, tolerance in _ORBIT_TOLERANCES.items():

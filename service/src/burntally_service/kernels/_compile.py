@@ -14,7 +14,7 @@ from pathlib import Path
 from types import FunctionType
 from typing import Any, Final, ParamSpec, TypeGuard, TypeVar, cast
 
-__all__ = ["cache_directory", "compiled", "kernel_digest"]
+__all__ = ["INLINED", "cache_directory", "compiled", "kernel_digest"]
 
 _P = ParamSpec("_P")
 _R = TypeVar("_R")
@@ -22,7 +22,7 @@ _R = TypeVar("_R")
 _PACKAGE: Final = __name__.rpartition(".")[0]
 _DIGEST_LENGTH: Final = 16
 
-_INLINED: Final = frozenset(
+INLINED: Final = frozenset(
     {
         "_begin",
         "_burn",
@@ -187,7 +187,7 @@ def _compile(function: FunctionType) -> Callable[..., object]:
             cache=folder is not None,
             nogil=True,
             error_model="numpy",
-            forceinline=function.__name__ in _INLINED,
+            forceinline=function.__name__ in INLINED,
         )
     finally:
         settings["CACHE_DIR"] = before

@@ -22,6 +22,8 @@ __all__ = ["books_record", "flat_cells", "records", "room_of", "tables_record"]
 _LEAST_ROOM: Final = 64
 """Room for as many rows of every kind as a common design has."""
 
+# Some lists grow with a product, accounts by stages or branches by stages, or hold several rows for each leg or stage.
+# A multiple for them keeps the room small, which one long list would otherwise double for all.
 _ROWS_PER_ROOM: Final = {"burner_of": 8, "last_named": 8, "steps": 4, "items": 4, "lit": 4}
 _BOOKS_PER_ROOM: Final = {"rule_sum": 16, "count": 1, "added": 1}
 

@@ -72,12 +72,13 @@ def plan_transfer(leg: Transfer, start: Location | None, bodies: Mapping[str, Bo
     if leg.to.body not in {None, body.name}:
         message = f"the leg starts at {body.name}; use a transit to reach {leg.to.body}"
         return unplanned(PlanFinding(code="wrong-body", message=message, suffix="/to/body"))
-    asked = _from_hyperbola(leg, start, body, pointer) if isinstance(start, Hyperbola) else None
-    if isinstance(start, OrbitLocation):
+    if isinstance(start, Hyperbola):
+        asked = _from_hyperbola(leg, start, body, pointer)
+    else:
         asked = _from_orbit(leg, start, body, pointer)
-    if isinstance(asked, _Asked):
-        return _planned(leg, asked, choose(asked.errand, leg, body), body)
-    return unplanned(asked or _lost("nothing is known of where this leg starts"), _meant_end(leg, start, body, pointer))
+    if isinstance(asked, PlanFinding):
+        return unplanned(asked, _meant_end(leg, start, body, pointer))
+    return _planned(leg, asked, choose(asked.errand, leg, body), body)
 
 
 def _planned(leg: Transfer, asked: _Asked, choice: Choice, body: Body) -> LegPlan:
@@ -102,9 +103,10 @@ def _planned(leg: Transfer, asked: _Asked, choice: Choice, body: Body) -> LegPla
 def _end(leg: Transfer, asked: _Asked, path: Path | None, body: Body) -> OrbitLocation:
     """Tell where the transfer ends."""
     argp = asked.start.argument_of_periapsis
-    if argp is not None and (path is None or path.apse is None):
+    if path is None or path.apse is None:
         argp = None
-    elif argp is not None and path is not None and path.apse is not None and path.steps:
+    elif argp is not None and path.steps:
+        # Without a burn the stated angle stays as it is, since radians and back would change its last digit.
         argp = math.degrees(path.apse) % 360.0
     return location_after(leg.to, asked.start, body, argument_of_periapsis=argp)
 

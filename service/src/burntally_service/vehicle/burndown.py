@@ -1,4 +1,8 @@
-"""How the engines of one stage burn its loads down: intervals of one set of lit engines."""
+"""How the engines of one stage burn its loads down: intervals of one set of lit engines.
+
+The tally burns a stage out as well (`tally_burns.burn_out`), from its own books, where ignitions and propellant may be
+used up. Here a vehicle has flown nothing yet, and its nozzles may stand in air. A test holds the two to one another.
+"""
 
 from collections.abc import Sequence
 from dataclasses import dataclass
