@@ -142,6 +142,12 @@ def test_a_limit_that_a_preset_gave_is_told_at_the_rules() -> None:
     assert found.limit == pytest.approx(350.0 / 1.1, rel=1e-12, abs=0.0)
 
 
+def test_an_overfilled_load_tells_the_share_of_its_capacity() -> None:
+    tug = stage(propellants=[{"mass": 400.0, "capacity": 400.0}])
+    (found,) = findings(budget_of(design([burn(1.0)], tug, limits={"fill_max": 0.9})), "overfilled")
+    assert found.message.endswith("pass the 360 kg that may be loaded: fill_max 0.9 of 400 kg")
+
+
 def test_a_lifted_limit_is_not_held() -> None:
     tug = stage(propellants=[{"mass": 340.0, "capacity": 350.0}])
     plain = design([burn(1.0)], tug, preset="esa-2012", limits={"fill_max": None})

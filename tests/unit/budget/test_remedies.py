@@ -160,3 +160,11 @@ def test_a_leg_may_be_left_out_where_no_number_mends_it() -> None:
 
 def test_what_does_not_fall_short_has_no_remedy() -> None:
     assert [found for found in budget_of(design([burn(10.0)])).findings if found.remedies] == []
+
+
+@pytest.mark.parametrize("field,unit", [("isp", "s"), ("mass", "kg")])
+def test_a_changed_quantity_is_told_in_its_unit(field: str, unit: str) -> None:
+    found = shortfalls(budget_of(design([burn(2500.0)], stage())))
+    messages = [remedy.message for each in found for remedy in each.remedies if remedy.pointer.endswith(field)]
+    assert messages
+    assert [message for message in messages if not message.endswith(f" {unit}")] == []

@@ -3,8 +3,6 @@
 from collections.abc import Sequence
 from typing import Final
 
-import msgspec
-
 from burntally.cli.columns import grouped, hang
 from burntally.model.budget import Caution, Finding, Remedy
 
@@ -71,12 +69,6 @@ def _remedy_lines(remedies: Sequence[Remedy], told: set[str]) -> list[str]:
 
 
 def _remedy(remedy: Remedy) -> str:
+    # The message holds the change itself; the field's old and new values would only say it again.
     then = "" if remedy.margin is None else f"; margin then {grouped(remedy.margin)} m/s"
-    return f"{remedy.message} ({remedy.pointer}: {_field(remedy.from_)} -> {_field(remedy.to)}{then})"
-
-
-def _field(value: object) -> str:
-    """Write a field's value as a design file has it."""
-    if value is None:
-        return "absent"
-    return f"{value:.10g}" if isinstance(value, float) else msgspec.json.encode(value).decode()
+    return f"{remedy.message} ({remedy.pointer}{then})"

@@ -22,12 +22,14 @@ _SIGNIFICANT = 4
 
 
 class Change(Struct, frozen=True, kw_only=True):
-    """A field that may be changed, up to a bound, and in what words."""
+    """A field that may be changed, up to a bound, and in what words and unit."""
 
     pointer: str
     now: float
     bound: float
     words: str
+    unit: str
+    """Unit of the contract; empty for a plain number."""
 
 
 def changes(drawn: Drawn, branch: int, leg: int | None) -> Iterator[Change]:
@@ -52,12 +54,13 @@ def changes(drawn: Drawn, branch: int, leg: int | None) -> Iterator[Change]:
     for index, payload in enumerate(drawn.design.vehicle.payloads):
         if isinstance(payload.mass, float) and payload.mass > 0.0:
             pointer = f"/vehicle/payloads/{index}/mass"
-            yield Change(pointer=pointer, now=payload.mass, bound=0.0, words=f"carry {payload.name}")
+            yield Change(pointer=pointer, now=payload.mass, bound=0.0, words=f"carry {payload.name}", unit="kg")
     for engine, (stage, place) in enumerate(drawn.lowered.engines):
         row = drawn.lowered.tables.engines[engine]
         if stage in payers and not row.auxiliary:
             pointer = f"/vehicle/stages/{stage}/engines/{place}/isp"
-            yield Change(pointer=pointer, now=row.isp, bound=1.5 * row.isp, words=f"isp of {drawn.engine_name(engine)}")
+            words = f"isp of {drawn.engine_name(engine)}"
+            yield Change(pointer=pointer, now=row.isp, bound=1.5 * row.isp, words=words, unit="s")
 
 
 def _payers(drawn: Drawn, branch: int, leg: int | None) -> set[int]:
@@ -83,7 +86,7 @@ def _loads(drawn: Drawn, payers: set[int]) -> Iterator[Change]:
             bound = min(capacity, 1000.0 * max(model.mass, drawn.initial_mass), _MOST_LOAD)
             pointer = f"{drawn.load_pointer(load)}/mass"
             words = f"load {model.name} of {drawn.part_name(stage)}"
-            yield Change(pointer=pointer, now=model.mass, bound=bound, words=words)
+            yield Change(pointer=pointer, now=model.mass, bound=bound, words=words, unit="kg")
 
 
 def least_change(change: Change, owed: Callable[[float], float]) -> float | None:

@@ -167,11 +167,12 @@ def overfilled(drawn: Drawn) -> Iterator[Finding]:
         if kg > limit * (1.0 + _ROUNDING):
             stage, place = drawn.lowered.loads[load]
             model = drawn.lowered.stages[stage]
+            of = "" if share is None else f": fill_max {share:.6g} of {capacity:.6g} kg"
             yield Finding(
                 code="overfilled",
                 severity="error",
                 message=f"{kg:.6g} kg of {model.propellants[place].name} in {model.name} pass the "
-                f"{limit:.6g} kg that may be loaded",
+                f"{limit:.6g} kg that may be loaded{of}",
                 pointer=f"{drawn.load_pointer(load)}/mass",
                 value=kg,
                 limit=limit,

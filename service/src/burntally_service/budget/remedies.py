@@ -135,7 +135,8 @@ def _checked(bench: _Bench, change: Change, value: float, mends: Callable[[Drawn
     again = bench.draw(change.pointer, value, with_slack=True)
     if again is None or not mends(again):
         return None
-    return _remedy(again, change.pointer, (change.now, value), f"{change.words}: {change.now:.6g} → {value:.6g}")
+    words = f"{change.words}: {change.now:.6g} → {value:.6g} {change.unit}".rstrip()
+    return _remedy(again, change.pointer, (change.now, value), words)
 
 
 def _remedy(again: Drawn, pointer: str, values: tuple[object, object], message: str) -> Remedy:
@@ -228,20 +229,22 @@ def _what_fits(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy
 def _less_asked(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
     """Ask less of a leg whose cost is stated: what its account can pay."""
     row = _leg_row(drawn, finding)
-    for name in ("delta_v", "upkeep_per_year", "propellant"):
+    for name, unit in (("delta_v", "m/s"), ("upkeep_per_year", "m/s"), ("propellant", "kg")):
         stated = getattr(row.leg, name, None)
         if isinstance(stated, float) and stated > 0.0:
-            change = Change(pointer=f"{row.pointer}/{name}", now=stated, bound=0.0, words=f"ask less: {name}")
+            pointer, words = f"{row.pointer}/{name}", f"ask less: {name}"
+            change = Change(pointer=pointer, now=stated, bound=0.0, words=words, unit=unit)
             yield from _least_tried(finding, change, bench)
 
 
 def _less_held(drawn: Drawn, finding: Finding, bench: _Bench) -> Iterator[Remedy]:
     """Hold less in reserve, where the design states it."""
     reserve = value_at(drawn.design, finding.pointer)
-    for name in ("delta_v", "fraction"):
+    for name, unit in (("delta_v", "m/s"), ("fraction", "")):
         stated = getattr(reserve, name, 0.0)
         if stated > 0.0:
-            change = Change(pointer=f"{finding.pointer}/{name}", now=stated, bound=0.0, words=f"hold less: {name}")
+            pointer, words = f"{finding.pointer}/{name}", f"hold less: {name}"
+            change = Change(pointer=pointer, now=stated, bound=0.0, words=words, unit=unit)
             yield from _least_tried(finding, change, bench)
 
 
