@@ -96,6 +96,12 @@ def test_an_unknown_preset_is_told_at_its_place() -> None:
     assert [violation.pointer for violation in caught.value.violations] == ["/rules/preset"]
 
 
+def test_an_unknown_preset_is_told_the_known_ones() -> None:
+    with pytest.raises(UncomputableError) as caught:
+        resolve(Rules(preset="nobody"))
+    assert caught.value.violations[0].expected == "esa-2012, esa-mar"
+
+
 @pytest.mark.parametrize(
     "category, taken",
     [

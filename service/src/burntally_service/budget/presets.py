@@ -12,7 +12,7 @@ from burntally.model.errors import NotFoundError, Violation
 from burntally.model.operations import PresetRecord, Presets
 from burntally.model.rules import Rules
 
-__all__ = ["list_presets", "preset_digest", "preset_named", "preset_rules"]
+__all__ = ["list_presets", "preset_digest", "preset_named", "preset_names", "preset_rules"]
 
 _READER_KEYS = frozenset({"title", "source", "url", "notes"})
 
@@ -32,6 +32,11 @@ def preset_rules(name: str) -> Rules | None:
         return None
     stated = {key: value for key, value in policy.items() if key not in _READER_KEYS}
     return msgspec.convert(stated, Rules)
+
+
+def preset_names() -> str:
+    """Names of all presets, as a violation tells what it expected."""
+    return ", ".join(_policies())
 
 
 def preset_digest(name: str) -> str | None:
@@ -62,8 +67,7 @@ def preset_named(name: str) -> PresetRecord:
     """
     rules = preset_rules(name)
     if rules is None:
-        known = ", ".join(_policies())
-        violation = Violation(pointer="/name", message="no preset has this name", read=name, expected=known)
+        violation = Violation(pointer="/name", message="no preset has this name", read=name, expected=preset_names())
         raise NotFoundError([violation])
     policy = _policies()[name]
     return PresetRecord(

@@ -4,7 +4,7 @@ from msgspec import UNSET, structs
 
 from burntally.model.errors import UncomputableError, Violation
 from burntally.model.rules import Contingency, Limits, Rules
-from burntally_service.budget.presets import preset_rules
+from burntally_service.budget.presets import preset_names, preset_rules
 
 __all__ = ["no_rule", "resolve", "rule_for"]
 
@@ -40,8 +40,9 @@ def resolve(rules: Rules, *, pointer: str = "/rules") -> Rules:
             [
                 Violation(
                     pointer=f"{pointer}/preset",
-                    message="no preset has this name; GET /v1/rules lists them",
+                    message="no preset has this name",
                     read=rules.preset,
+                    expected=preset_names(),
                 )
             ]
         )
