@@ -186,6 +186,14 @@ def test_a_refusal_says_what_is_wrong(probe: Probe, client: Client) -> None:
     assert (problem.type, problem.title) == (f"/problems/{probe.code}", PROBLEMS[probe.code].title)
 
 
+def test_the_detail_of_one_violation_names_its_field(client: Client) -> None:
+    assert client.post("/v1/performance", headers=JSON, content=b"{}").json()["detail"] == "/vehicle is missing"
+
+
+def test_a_missing_content_type_is_told_to_be_missing(client: Client) -> None:
+    assert client.post("/v1/budgets").json()["detail"].startswith("Content-Type is missing; ")
+
+
 @pytest.mark.usefixtures("failing")
 def test_a_failure_tells_nothing_of_the_inside(client: Client) -> None:
     response = client.get("/v1/bodies")

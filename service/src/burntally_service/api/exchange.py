@@ -102,10 +102,12 @@ def _body_media_type(headers: dict[bytes, str]) -> str:
     encoding = headers.get(b"content-encoding", "identity")
     if encoding.lower() != "identity":
         raise ProblemError("unsupported-media-type", "a body with a content encoding is not read")
-    media_type = body_media_type(headers.get(b"content-type", ""))
+    sent = headers.get(b"content-type", "")
+    media_type = body_media_type(sent)
     if media_type is None:
+        read = "is missing" if not sent else "is one that is not read"
         raise ProblemError(
-            "unsupported-media-type", "Content-Type must be application/json (UTF-8) or application/msgpack"
+            "unsupported-media-type", f"Content-Type {read}; it must be application/json (UTF-8) or application/msgpack"
         )
     return media_type
 

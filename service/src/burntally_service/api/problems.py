@@ -211,7 +211,9 @@ def _read(error: Exception) -> tuple[str, str | None, Sequence[Violation], dict[
 def _count(violations: Sequence[Violation]) -> str | None:
     if not violations:
         return None
-    return violations[0].message if len(violations) == 1 else f"{len(violations)} violations; errors names each"
+    if len(violations) > 1:
+        return f"{len(violations)} violations; errors names each"
+    return f"{violations[0].pointer} {violations[0].message}".lstrip()
 
 
 def _kept_headers(error: HTTPException) -> dict[str, str]:
