@@ -18,7 +18,7 @@ from burntally.client import errors
 from burntally.client.inprocess import InProcessSender
 from burntally.client.messages import Reply, Request
 from burntally.model.budget import Budget
-from burntally.model.errors import UncomputableError, Violation
+from burntally.model.errors import NotFoundError, UncomputableError, Violation
 from tests.cli import made_budgets
 
 DESIGN = """\
@@ -208,6 +208,17 @@ def test_several_files_are_one_json_document_a_line(design: str, installed: Inst
     installed(answering(made_budgets.closing()))
     main(["check", "--format", "json", design, design])
     assert [json.loads(line)["closes"] for line in capfd.readouterr().out.splitlines()] == [True, True]
+
+
+def test_a_bad_file_has_its_json_line_too(design: str, installed: Installed, tmp_path: Path, capfd: Any) -> None:
+    installed(answering(made_budgets.closing()))
+    main(["check", "--format", "json", str(tmp_path / "absent.toml"), design])
+    assert [json.loads(line) is None for line in capfd.readouterr().out.splitlines()] == [True, False]
+
+
+def test_a_server_without_the_path_is_no_service(design: str, installed: Installed) -> None:
+    installed(raising(NotFoundError([Violation(pointer="", message="is nowhere")])))
+    assert main(["check", design]) == ExitCode.NOT_REACHABLE
 
 
 def test_several_files_have_their_names_above(

@@ -91,6 +91,12 @@ def test_a_fault_that_stays_is_raised_after_the_tries(fault: Any, kind: type[Exc
     assert len(script.asked) == 3
 
 
+@pytest.mark.usefixtures("pauses")
+def test_a_failed_connection_names_the_address(ask: Ask) -> None:
+    with pytest.raises(errors.ConnectionFailed, match=r"^https?://[^/@]+: ConnectError: refused"):
+        ask(Script(httpx2.ConnectError("refused")), "bodies", tries=1)
+
+
 def test_a_timeout_is_not_tried_again(ask: Ask, pauses: list[float]) -> None:
     with pytest.raises(errors.TimedOut):
         ask(Script(httpx2.ReadTimeout("late")), "bodies")

@@ -24,7 +24,7 @@ def add_arguments(parser: ArgumentParser) -> None:
         "--format",
         choices=("text", "json"),
         default="text",
-        help="text for people (default), or the budget's JSON, one line for each file",
+        help="text for people (default), or JSON: one line for each file, null where it is no design",
     )
     parser.add_argument(
         "--server", metavar="URL", type=_address, help="ask the service at this address, not the installed one"
@@ -71,6 +71,9 @@ def _check(client: "Client", path: Path, arguments: Namespace) -> ExitCode:
         answer = client.call(CREATE_BUDGET.id, read_design(path))
     except BLAMED_ON_INPUT as error:
         print(*lines_of(path, error), sep="\n", file=sys.stderr)
+        if arguments.format == "json":
+            # The lines stand for the files by their order, so a file without a budget has one too.
+            print("null")
         return ExitCode.BAD_INPUT
     budget = decoded(CREATE_BUDGET, answer)
     _write(path, answer.body, budget, arguments)

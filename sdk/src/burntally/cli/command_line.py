@@ -64,6 +64,7 @@ def _run(arguments: Namespace) -> ExitCode:
     from burntally.client.errors import (
         ClientError,
         ConnectionFailed,
+        NotFound,
         RateLimited,
         ServiceMissing,
         TimedOut,
@@ -75,6 +76,9 @@ def _run(arguments: Namespace) -> ExitCode:
         sys.stdout.flush()
     except (ConnectionFailed, RateLimited, ServiceMissing, TimedOut, Unavailable) as error:
         return _told(error, ExitCode.NOT_REACHABLE)
+    except NotFound:
+        told = "nothing answers to this path; --server takes an address without one, as http://127.0.0.1:8463"
+        return _told(told, ExitCode.NOT_REACHABLE)
     except ClientError as error:
         return _told(error, ExitCode.INTERNAL)
     except SystemExit as stop:
@@ -88,6 +92,6 @@ def _run(arguments: Namespace) -> ExitCode:
     return code
 
 
-def _told(error: Exception, code: ExitCode) -> ExitCode:
+def _told(error: Exception | str, code: ExitCode) -> ExitCode:
     print(f"burntally: {error}", file=sys.stderr)
     return code

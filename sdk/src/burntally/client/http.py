@@ -122,6 +122,8 @@ def _fault_of(fault: "httpx2.HTTPError", request: Request) -> ClientError:
 
     timed_out = isinstance(fault, httpx2.TimeoutException) and not isinstance(fault, httpx2.ConnectTimeout)
     kind: type[ClientError] = TimedOut if timed_out else ConnectionFailed
-    error = kind(f"{type(fault).__name__}: {fault}", request=request)
+    # Without user and password, which an address may carry and a log should not.
+    url = fault.request.url
+    error = kind(f"{url.scheme}://{url.netloc.decode()}: {type(fault).__name__}: {fault}", request=request)
     error.__cause__ = fault
     return error
