@@ -237,7 +237,7 @@ def test_one_ledger_with_slack_in_plain_python(drawn: Drawn, capsys: pytest.Capt
     def work() -> None:
         books = blank_books(tables, 100)
         tally(tables, books)
-        slacks(tables, books, [[0.0] * marks, *([0.0] * tables.n_stages for _ in range(4)), [-1.0] * 5])
+        slacks(tables, books, [[0.0] * marks, *([0.0] * tables.n_stages for _ in range(5)), [-1.0] * 5])
 
     def loop() -> float:
         total = 0.0

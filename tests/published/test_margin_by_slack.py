@@ -91,3 +91,23 @@ def test_margin_without_mass_events_is_the_textbooks_ideal_delta_v_left() -> Non
     plain = design([burn(300.0), burn(400.0), burn(150.0)], stage(propellants=[{"mass": 400.0}]))
     v_exhaust = 320.0 * G0
     assert budget_of(plain).margin == pytest.approx(v_exhaust * math.log(900.0 / 500.0) - 850.0, rel=1e-12, abs=0.0)
+
+
+def two_tugs(*legs: dict[str, Any]) -> dict[str, Any]:
+    """Two stages of one exhaust speed, the lower of which drops once it is dry."""
+    return design(legs, stage("below"), stage("above"))
+
+
+def test_a_leg_that_names_its_payer_caps_what_a_later_handover_allows() -> None:
+    # Held by hand: the named payer has 400 kg out of 1 800 kg, however much the other stage could add afterwards.
+    capability = 320.0 * G0 * math.log(1800.0 / 1400.0)
+    found = slacks(two_tugs(burn(60.0), burn(220.0, "below"), burn(capability)))
+    assert found[:2] == pytest.approx([capability - 280.0] * 2, rel=1e-9, abs=0.0)
+
+
+def test_the_stage_that_goes_on_pays_what_a_tank_filled_later_would_have_paid() -> None:
+    # Held by hand: once the lower stage has dropped, both legs are the upper one's but for the lower one's 400 kg.
+    below, above = 320.0 * G0 * math.log(1800.0 / 1400.0), 320.0 * G0 * math.log(900.0 / 500.0)
+    filling = {"kind": "take_on", "propellants": [{"stage": "below", "load": "propellant", "mass": 300.0}]}
+    found = slacks(two_tugs(burn(60.0), filling, burn(90.0)))
+    assert found[0] == pytest.approx(below + above - 150.0, rel=1e-9, abs=0.0)

@@ -254,7 +254,7 @@ def _slack(lowered: Lowered, books: rows.Books, *, in_haste: bool) -> list[float
     """Slack by leg, then by branch for its reserve; none in a branch that owes."""
     tables = lowered.tables
     legs, stages, branches = len(tables.legs), len(tables.stages), len(tables.branches)
-    walk = [[0.0] * (legs + branches), *([0.0] * stages for _ in range(4)), [-1.0] * 5]
+    walk = [[0.0] * (legs + branches), *([0.0] * stages for _ in range(5)), [-1.0] * 5]
     slacks(tables, books, walk)
     found: list[float | None] = [None] * (legs + branches)
     scratch = None

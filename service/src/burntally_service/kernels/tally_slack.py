@@ -39,12 +39,14 @@ __all__ = ["slacks"]
 SEARCH: Final = -1.0
 """Mark of a slack that the closed form cannot tell."""
 
-# Rows of the walk: slack by mark, then by stage its state, reach, mask and tail, then the draw walked last.
+# Rows of the walk: slack by mark, then by stage its state, reach, mask, tail and the account that the tail is of, then
+# the draw walked last.
 STATE: Final = 1
 REACH: Final = 2
 MASKS: Final = 3
 TAIL: Final = 4
-LAST: Final = 5
+ACCOUNT: Final = 5
+LAST: Final = 6
 
 # States of a stage on the walk back: it draws no more; it draws no more while another does; it draws; it draws
 # together with others. Only a stage that draws alone has a reach of its own, because what another one draws depends on
@@ -71,8 +73,8 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     books : Books
         Its books, with all lines.
     walk : list of lists of float
-        Scratch of six rows: slack by mark [m/s], then state, reach [kg], mask and tail [m/s] by stage, then five cells
-        about the draw walked last, the first of them -1; changed.
+        Scratch of seven rows: slack by mark [m/s], then state, reach [kg], mask, tail [m/s] and account by stage, then
+        five cells about the draw walked last, the first of them -1; changed.
 
     Returns
     -------
@@ -89,7 +91,7 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> from burntally_service.kernels.tally_rows import NO_TABLES
     >>> empty = NO_TABLES
-    >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], [], [-1.0] * 5])
+    >>> slacks(empty, blank_books(empty, 0), [[], [], [], [], [], [], [-1.0] * 5])
     """
     legs = tables.n_legs
     end = books.count[LINES]
@@ -102,15 +104,15 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
         if row.reserves:
             mark = legs + row.branch
             if books.reserve[row.branch] > 0.0:
-                walk[0][mark] = _slack_at(books, walk, mark)
+                walk[0][mark] = _slack_at(books, walk, mark, row.account)
             _walk_lines(tables, books, walk, (end - 1, after, mark))
         if row.charged:
-            walk[0][leg] = _slack_at(books, walk, leg)
+            walk[0][leg] = _slack_at(books, walk, leg, row.account)
         _walk_lines(tables, books, walk, (after - 1, books.line_begin[leg], leg))
         end = books.line_begin[leg]
 
 
-def _slack_at(books: Books, walk: list[list[float]], mark: int) -> float:
+def _slack_at(books: Books, walk: list[list[float]], mark: int, account: int) -> float:
     """Slack at the end of a leg, or after a reserve."""
     stage = books.spare_stage[mark]
     if stage < 0:
@@ -121,9 +123,9 @@ def _slack_at(books: Books, walk: list[list[float]], mark: int) -> float:
         return SEARCH
     if state == KNOWN and walk[REACH][stage] <= reach:
         reach = walk[REACH][stage]
-        tail = walk[TAIL][stage]
+        tail = _tail_for(walk, stage, account)
     else:
-        tail = _tail_after(books, walk, mark, state)
+        tail = _tail_after(books, walk, (mark, account), state)
     if tail < 0.0:
         return SEARCH
     mass = books.spare_mass[mark]
@@ -135,11 +137,19 @@ def _is_mixed(walk: list[list[float]], stage: int, mask: float) -> bool:
     return walk[STATE][stage] == MIXED or (walk[STATE][stage] == KNOWN and walk[MASKS][stage] != mask)
 
 
-def _tail_after(books: Books, walk: list[list[float]], mark: int, state: float) -> float:
+def _tail_for(walk: list[list[float]], stage: int, account: int) -> float:
+    """Tail of a stage for an account; -1 if it is of another one, which need not have who goes on."""
+    tail = walk[TAIL][stage]
+    return SEARCH if tail > 0.0 and walk[ACCOUNT][stage] != account else tail
+
+
+def _tail_after(books: Books, walk: list[list[float]], at: tuple[int, int], state: float) -> float:
     """Delta-v that the next stage could add if the payer of a mark ran dry and dropped there; -1 if unclear."""
+    mark, account = at
     if books.spare_more[mark] == NO_MORE:
         return 0.0
-    if books.spare_more[mark] == UNCLEAR or state == BUSY:
+    if books.spare_more[mark] == UNCLEAR or state != NOTHING:
+        # What the payer still draws later, out of a tank that is filled by then, would fall to the next stage too.
         return SEARCH
     stage = books.next_stage[mark]
     reach = books.next_spare[mark]
@@ -148,7 +158,7 @@ def _tail_after(books: Books, walk: list[list[float]], mark: int, state: float) 
         return SEARCH
     if walk[STATE][stage] == KNOWN and walk[REACH][stage] <= reach:
         reach = walk[REACH][stage]
-        tail = walk[TAIL][stage]
+        tail = _tail_for(walk, stage, account)
     if tail < 0.0:
         return SEARCH
     mass = books.next_mass[mark]
@@ -209,6 +219,7 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
     drawer = tables.burners[int(lines[start + PART])].stage
     mask = lines[start + MASK]
     spare = lines[start + SPARE]
+    account = tables.legs[int(lines[start + LEG])].account
     if _is_mixed(walk, drawer, mask):
         # Other engines draw on the loads in other shares, so kilograms of one set are none of the other.
         walk[STATE][drawer] = MIXED
@@ -218,6 +229,8 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
         walk[REACH][drawer] = spare
         walk[MASKS][drawer] = mask
         walk[TAIL][drawer] = _tail_of(tables, books, walk, (start, mark, drawer, state))
+        walk[ACCOUNT][drawer] = account
+    walk[TAIL][drawer] = _tail_for(walk, drawer, account)
     if drawer != int(walk[LAST][0]):
         _mix_others(tables, walk, drawer)
     mass = lines[start + MASS]
@@ -250,7 +263,8 @@ def _tail_of(tables: Tables, books: Books, walk: list[list[float]], at: tuple[in
         return 0.0
     if books.spare_stage[mark] != drawer or books.spare_mask[mark] != int(books.lines[start + MASK]):
         return SEARCH
-    tail = _tail_after(books, walk, mark, state)
+    account = tables.legs[int(books.lines[start + LEG])].account
+    tail = _tail_after(books, walk, (mark, account), state)
     if tail > 0.0 and not _is_plain(tables, books, books.next_stage[mark], drawer):
         return SEARCH
     return tail
