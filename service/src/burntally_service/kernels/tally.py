@@ -79,6 +79,7 @@ def tally(tables: Tables, books: Books) -> None:
         elif op == COAST:
             _coast(tables, books, step.leg, step.amount)
         elif op == START:
+            # A branch whose part never left has nothing to fly: its steps are passed over.
             if not books.branch_started[step.part]:
                 index = tables.branches[step.part].end_step
         elif op == DRAW:
@@ -104,6 +105,7 @@ def _manoeuvre(tables: Tables, books: Books, leg: int, order: tuple[int, float, 
         return
     share = amount / splits
     for _ in range(splits):
+        # An engine is lit while it bears the present stamp, so a new one puts all of them out.
         books.count[STAMP] += 1
         owed = pay(tables, books, leg, purpose, share)
         if owed > 0.0:
@@ -151,6 +153,7 @@ def _contingency(tables: Tables, books: Books, leg: int) -> None:
     if row.floor_on_category:
         place = row.branch * tables.n_rules + row.rule
         books.rule_sum[place] += share
+        # One floor for all legs of the category, so it waits until their shares are all known.
         if row.settles:
             floor = max(0.0, row.floor - books.rule_sum[place])
     elif row.rule >= 0:
@@ -200,6 +203,7 @@ def _coast(tables: Tables, books: Books, leg: int, duration: float) -> None:
         write_line(books, (LINE_BOILED, leg, load), (0.0, 0.0, kg, mass, clock, dried, 0.0))
         books.usable[load] -= kg
         if books.usable[load] <= books.dry_mark[load]:
+            # The engines that it fed are out, so the flow that is kept for the stage no longer holds.
             books.flow_of[row.stage] = -1
         books.boiled[load] += kg
         books.branch_mass[branch] -= kg

@@ -207,6 +207,7 @@ def wipe(tables: Tables, books: Books) -> None:
     >>> from burntally_service.kernels.tally_rows import NO_TABLES
     >>> wipe(NO_TABLES, blank_books(NO_TABLES, 0))
     """
+    # Entries that are written before they are read stay as they are, since a search wipes the books for every try.
     for load in range(tables.n_loads):
         books.burned[load] = books.lost[load] = books.boiled[load] = books.handed[load] = books.taken[load] = 0.0
     for engine in range(tables.n_engines):

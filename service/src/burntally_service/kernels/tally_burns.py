@@ -55,6 +55,7 @@ def _ignite(tables: Tables, books: Books, leg: int, burner: int, mask: int) -> N
     branch = tables.legs[leg].branch
     first = tables.stages[row.stage].first_engine
     stamp = books.count[STAMP]
+    # All are lit before any loss is taken, because the loss of one may leave dry what feeds another.
     for place in range(row.first_lit, row.end_lit):
         engine = tables.lit[place]
         if mask >> (engine - first) & 1:
@@ -107,9 +108,11 @@ def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int,
         speed = thrust / mdot
         time, first_dry = spare_of(tables, books, stage)
         spare = mdot * time
+        # expm1, since one minus an exponential would lose the digits of a small delta-v.
         wanted = amount if purpose == KILOGRAMS else -mass * math.expm1(-amount / speed)
         enough = wanted <= spare
         kg = wanted if enough else spare
+        # What suffices pays in full, to the last digit, so that no rounding is owed.
         paid = amount
         if purpose == KILOGRAMS:
             paid = kg
@@ -125,6 +128,7 @@ def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int,
         amount -= paid
         if enough or amount <= 0.0:
             return 0.0
+        # Emptied exactly, so that no rounding keeps an engine lit.
         books.usable[first_dry] = 0.0
         books.flow_of[stage] = -1
         _mark_unbalanced(tables, books, stage, first_dry)

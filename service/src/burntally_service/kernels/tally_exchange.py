@@ -155,6 +155,7 @@ def _take_propellant(tables: Tables, books: Books, leg: int, order: tuple[int, f
     books.usable[load] += kg - residual
     books.taken[load] += kg
     books.stock[load] += kg
+    # What rounding may leave grows with what was loaded, and the dry mark with it.
     books.dry_mark[load] = DRY_FRACTION * books.stock[load]
     books.flow_of[row.stage] = -1
     books.branch_mass[branch] += kg
@@ -167,6 +168,7 @@ def _dock(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -> N
     stages = tables.n_stages
     moved = 0
     for position in range(stages):
+        # Each stage that went to the top has let those after it down by one place.
         stage = books.order[position - moved]
         if books.where[stage] != docked or is_over <= 0.0:
             continue

@@ -71,6 +71,7 @@ def shed(tables: Tables, books: Books, leg: int, payer_position: int) -> None:
         stage = books.order[position]
         if books.where[stage] != branch:
             continue
+        # What must stay keeps aboard all that stands above it, so the search upward ends here.
         if tables.stages[stage].by_leg or tables.last_named[branch * stages + stage] > leg:
             break
         if _is_spent(tables, books, stage):
@@ -128,6 +129,7 @@ def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
         write_line(books, (LINE_SEPARATION, leg, stage), entry)
         books.flow_of[stage] = -1
         row = tables.stages[stage]
+        # What was held back was held for this moment: a branch of the part may burn it now.
         for load in range(row.first_load, row.end_load):
             books.usable[load] += books.held[load]
             books.held[load] = 0.0
