@@ -20,7 +20,8 @@ NOTICE: Final = (
 )
 _ORDER_OF_THE_BOOKS: Final = (
     "Order of the books: required + losses + contingency = charged, leg by leg; the reserve is held after the last\n"
-    "charged leg of a branch; the margin is the least slack that is left then."
+    "charged leg of a branch; the margin is the least slack of any leg. A stage's delta-v is that of its usable load\n"
+    "in the stack as first flown; what is left is usable propellant, residuals apart."
 )
 _PRELIMINARY: Final = "preliminary"
 _DIGEST_SHOWN: Final = 12
