@@ -303,7 +303,21 @@ def _load(draft: _Draft, stage: str, load: str) -> int:
 def _hold_at_end(draft: _Draft, branch: int) -> None:
     """Add a leg that charges nothing, whose open account holds the reserve of a branch without a charged leg (C4)."""
     leg = len(draft.legs)
-    draft.legs.append(rows.LegRow(branch, 0, 0, 0, -1, 0.0, 0.0, 0.0, 0, 0, 1))
+    draft.legs.append(
+        rows.LegRow(
+            branch,
+            account=0,
+            charged=0,
+            quiet=0,
+            rule=-1,
+            fraction=0.0,
+            floor=0.0,
+            fixed=0.0,
+            floor_on_category=0,
+            settles=0,
+            reserves=1,
+        )
+    )
     draft.leg_names.append((branch, None))
     draft.steps.append(rows.StepRow(rows.BEGIN, leg, 0, 0.0, 1, 0))
     draft.steps.append(rows.StepRow(rows.END, leg, 0, 0.0, 1, 0))
