@@ -111,3 +111,40 @@ def test_the_stage_that_goes_on_pays_what_a_tank_filled_later_would_have_paid() 
     filling = {"kind": "take_on", "propellants": [{"stage": "below", "load": "propellant", "mass": 300.0}]}
     found = slacks(two_tugs(burn(60.0), filling, burn(90.0)))
     assert found[0] == pytest.approx(below + above - 150.0, rel=1e-9, abs=0.0)
+
+
+def test_kilograms_fall_to_the_stage_that_goes_on() -> None:
+    # Held by hand: in the limit the lower stage has dropped before the kilograms are drawn, so the upper one gives them
+    # and then burns from a stack that is lighter by as much.
+    v_exhaust, gas = 320.0 * G0, 7.0
+    venting = {"kind": "allowance", "category": "gas", "propellant": gas}
+    plain = two_tugs(burn(60.0), venting, {"kind": "separate", "stages": ["below"]}, burn(90.0))
+    last = (900.0 - 400.0) * math.exp(90.0 / v_exhaust)
+    expected = v_exhaust * (math.log(1800.0 / 1400.0) + math.log(900.0 / (last + gas))) - 60.0
+    assert slacks(plain)[0] == pytest.approx(expected, rel=1e-9, abs=0.0)
+
+
+def test_every_lesser_addition_is_paid_too() -> None:
+    # Held by hand: the second engine's own tank limits the addition. Far beyond, where the first engine has burned most
+    # of its tank, the stack is light enough again, but what lies between could not be paid.
+    v_exhaust, wet, filled = 320.0 * G0, 4100.0, 50.0
+    tug = stage(
+        dry_mass=100.0,
+        propellants=[{"name": "f", "mass": 3000.0}, {"name": "o", "mass": 1000.0}],
+        engines=[engine(name="first", feeds={"f": 1.0}), engine(name="second", feeds={"o": 1.0})],
+    )
+    filling = {"kind": "take_on", "propellants": [{"stage": "tug", "load": "o", "mass": filled}]}
+    share = -math.expm1(-100.0 / v_exhaust)
+    burned = (1000.0 + filled - (wet + filled) * share) / (0.5 - share)
+    found = slacks(design([burn(60.0), filling, burn(100.0, "tug", engines=["second"])], tug))
+    assert found[0] == pytest.approx(v_exhaust * math.log(wet / (wet - burned)) - 60.0, rel=1e-9, abs=0.0)
+
+
+def test_spent_stages_separate_one_after_another() -> None:
+    # Held by hand: both lower stages are dry when the top one burns; the branch of the second weighs 500 kg, not 1 000.
+    v_exhaust = 320.0 * G0
+    second, first = v_exhaust * math.log(2700.0 / 2300.0), v_exhaust * math.log(2300.0 / 1900.0)
+    rides = [burn(second, "two"), burn(first, "one"), burn(50.0, "three")]
+    branches = [{"of": "two", "legs": [{"kind": "coast", "duration": 10.0}]}]
+    plain = design(rides, stage("one"), stage("two"), stage("three"), branches=branches)
+    assert branch(budget_of(plain), "two").end_mass == pytest.approx(500.0, rel=1e-9, abs=0.0)

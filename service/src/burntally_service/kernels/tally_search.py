@@ -14,6 +14,10 @@ MOST: Final = 1e6
 TOLERANCE: Final = 1e-10
 """Width of the bracket at which the search ends, as a share of the slack."""
 
+LESSER: Final = 16
+"""Parts into which what could be added is cut, to see that every lesser addition is paid too: where a stage gone, or an
+ignition spent, leaves a lighter stack, more may be payable where less is not."""
+
 MOST_TRIES: Final = 200
 """The search halves its bracket at worst, and a bracket of 1e6 m/s needs 54 halvings."""
 
@@ -94,9 +98,18 @@ def slack_by_search(tables: Tables, scratch: Books, mark: int) -> float:
     owed_with(tables, scratch, mark, MOST)
     high = MOST - scratch.added[1]
     owed_high = owed_with(tables, scratch, mark, high)
-    if owed_high <= 0.0:
-        return high
-    low: float = 0.0
+    slack = high if owed_high <= 0.0 else _narrow(tables, scratch, (mark, 0.0, high, owed_high))
+    for place in range(1, LESSER):
+        added = slack * (place / LESSER)
+        owed = owed_with(tables, scratch, mark, added)
+        if owed > 0.0:
+            return _narrow(tables, scratch, (mark, slack * ((place - 1) / LESSER), added, owed))
+    return slack
+
+
+def _narrow(tables: Tables, scratch: Books, bracket: tuple[int, float, float, float]) -> float:
+    """Close a bracket, given as mark, an addition that owes nothing, and one that owes, with what it owes."""
+    mark, low, high, owed_high = bracket
     guess: float = high - owed_high
     step = 0.0
     for _ in range(MOST_TRIES):

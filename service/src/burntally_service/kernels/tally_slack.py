@@ -231,10 +231,14 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
         walk[TAIL][drawer] = _tail_of(tables, books, walk, (start, mark, drawer, state))
         walk[ACCOUNT][drawer] = account
     walk[TAIL][drawer] = _tail_for(walk, drawer, account)
+    is_burn = int(lines[start + KIND]) == LINE_BURN
+    if not is_burn and walk[TAIL][drawer] > 0.0:
+        # Kilograms that fall to the next stage are worth another delta-v there.
+        walk[TAIL][drawer] = SEARCH
     if drawer != int(walk[LAST][0]):
         _mix_others(tables, walk, drawer)
     mass = lines[start + MASS]
-    if int(lines[start + KIND]) == LINE_BURN:
+    if is_burn:
         walk[REACH][drawer] *= mass / (mass - lines[start + KG])
     last = walk[LAST]
     last[0] = float(drawer)

@@ -66,7 +66,6 @@ def shed(tables: Tables, books: Books, leg: int, payer_position: int) -> None:
     """
     branch = tables.legs[leg].branch
     stages = tables.n_stages
-    highest = -1
     for position in range(payer_position):
         stage = books.order[position]
         if books.where[stage] != branch:
@@ -75,11 +74,10 @@ def shed(tables: Tables, books: Books, leg: int, payer_position: int) -> None:
         if tables.stages[stage].by_leg or tables.last_named[branch * stages + stage] > leg:
             break
         if _is_spent(tables, books, stage):
-            highest = position
+            # One after another: a spent stage leaves by itself, and its branch holds none that left before.
+            detach(tables, books, leg, position)
         elif tables.stages[stage].first_engine < tables.stages[stage].end_engine:
             break
-    if highest >= 0:
-        detach(tables, books, leg, highest)
 
 
 def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
