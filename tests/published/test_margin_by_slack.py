@@ -148,3 +148,13 @@ def test_spent_stages_separate_one_after_another() -> None:
     branches = [{"of": "two", "legs": [{"kind": "coast", "duration": 10.0}]}]
     plain = design(rides, stage("one"), stage("two"), stage("three"), branches=branches)
     assert branch(budget_of(plain), "two").end_mass == pytest.approx(500.0, rel=1e-9, abs=0.0)
+
+
+def test_a_stage_that_a_later_leg_names_is_carried_dry() -> None:
+    # Held by hand: an addition at the first leg that empties the lower stage is finished with that stage aboard, which
+    # drops only before the upper stage burns for the second leg.
+    v_exhaust = 320.0 * G0
+    plain = two_tugs(burn(60.0, "below", "above"), burn(90.0, "below", "above"))
+    least = 500.0 * math.exp(90.0 / v_exhaust)
+    expected = v_exhaust * math.log(1800.0 / (500.0 + least)) - 60.0
+    assert slacks(plain)[0] == pytest.approx(expected, rel=1e-9, abs=0.0)

@@ -104,16 +104,17 @@ def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
         if row.reserves:
             mark = legs + row.branch
             if books.reserve[row.branch] > 0.0:
-                walk[0][mark] = _slack_at(books, walk, mark, row.account)
+                walk[0][mark] = _slack_at(tables, books, walk, (mark, leg))
             _walk_lines(tables, books, walk, (end - 1, after, mark))
         if row.charged:
-            walk[0][leg] = _slack_at(books, walk, leg, row.account)
+            walk[0][leg] = _slack_at(tables, books, walk, (leg, leg))
         _walk_lines(tables, books, walk, (after - 1, books.line_begin[leg], leg))
         end = books.line_begin[leg]
 
 
-def _slack_at(books: Books, walk: list[list[float]], mark: int, account: int) -> float:
+def _slack_at(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int]) -> float:
     """Slack at the end of a leg, or after a reserve."""
+    mark, leg = at
     stage = books.spare_stage[mark]
     if stage < 0:
         return 0.0
@@ -123,9 +124,9 @@ def _slack_at(books: Books, walk: list[list[float]], mark: int, account: int) ->
         return SEARCH
     if state == KNOWN and walk[REACH][stage] <= reach:
         reach = walk[REACH][stage]
-        tail = _tail_for(walk, stage, account)
+        tail = _tail_for(tables, walk, stage, leg)
     else:
-        tail = _tail_after(books, walk, (mark, account), state)
+        tail = _tail_after(tables, books, walk, (mark, leg, state))
     if tail < 0.0:
         return SEARCH
     mass = books.spare_mass[mark]
@@ -137,15 +138,17 @@ def _is_mixed(walk: list[list[float]], stage: int, mask: float) -> bool:
     return walk[STATE][stage] == MIXED or (walk[STATE][stage] == KNOWN and walk[MASKS][stage] != mask)
 
 
-def _tail_for(walk: list[list[float]], stage: int, account: int) -> float:
-    """Tail of a stage for an account; -1 if it is of another one, which need not have who goes on."""
+def _tail_for(tables: Tables, walk: list[list[float]], stage: int, leg: int) -> float:
+    """Tail of a stage at an earlier leg; -1 if another would go on there, or the stage would stay aboard once dry."""
     tail = walk[TAIL][stage]
-    return SEARCH if tail > 0.0 and walk[ACCOUNT][stage] != account else tail
+    row = tables.legs[leg]
+    is_kept = tables.last_named[row.branch * tables.n_stages + stage] > leg
+    return SEARCH if tail > 0.0 and (is_kept or walk[ACCOUNT][stage] != row.account) else tail
 
 
-def _tail_after(books: Books, walk: list[list[float]], at: tuple[int, int], state: float) -> float:
+def _tail_after(tables: Tables, books: Books, walk: list[list[float]], at: tuple[int, int, float]) -> float:
     """Delta-v that the next stage could add if the payer of a mark ran dry and dropped there; -1 if unclear."""
-    mark, account = at
+    mark, leg, state = at
     if books.spare_more[mark] == NO_MORE:
         return 0.0
     if books.spare_more[mark] == UNCLEAR or state != NOTHING:
@@ -158,7 +161,7 @@ def _tail_after(books: Books, walk: list[list[float]], at: tuple[int, int], stat
         return SEARCH
     if walk[STATE][stage] == KNOWN and walk[REACH][stage] <= reach:
         reach = walk[REACH][stage]
-        tail = _tail_for(walk, stage, account)
+        tail = _tail_for(tables, walk, stage, leg)
     if tail < 0.0:
         return SEARCH
     mass = books.next_mass[mark]
@@ -219,7 +222,7 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
     drawer = tables.burners[int(lines[start + PART])].stage
     mask = lines[start + MASK]
     spare = lines[start + SPARE]
-    account = tables.legs[int(lines[start + LEG])].account
+    leg = int(lines[start + LEG])
     if _is_mixed(walk, drawer, mask):
         # Other engines draw on the loads in other shares, so kilograms of one set are none of the other.
         walk[STATE][drawer] = MIXED
@@ -229,8 +232,8 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
         walk[REACH][drawer] = spare
         walk[MASKS][drawer] = mask
         walk[TAIL][drawer] = _tail_of(tables, books, walk, (start, mark, drawer, state))
-        walk[ACCOUNT][drawer] = account
-    walk[TAIL][drawer] = _tail_for(walk, drawer, account)
+        walk[ACCOUNT][drawer] = float(tables.legs[leg].account)
+    walk[TAIL][drawer] = _tail_for(tables, walk, drawer, leg)
     is_burn = int(lines[start + KIND]) == LINE_BURN
     if not is_burn and walk[TAIL][drawer] > 0.0:
         # Kilograms that fall to the next stage are worth another delta-v there.
@@ -267,8 +270,8 @@ def _tail_of(tables: Tables, books: Books, walk: list[list[float]], at: tuple[in
         return 0.0
     if books.spare_stage[mark] != drawer or books.spare_mask[mark] != int(books.lines[start + MASK]):
         return SEARCH
-    account = tables.legs[int(books.lines[start + LEG])].account
-    tail = _tail_after(books, walk, (mark, account), state)
+    leg = int(books.lines[start + LEG])
+    tail = _tail_after(tables, books, walk, (mark, leg, state))
     if tail > 0.0 and not _is_plain(tables, books, books.next_stage[mark], drawer):
         return SEARCH
     return tail
