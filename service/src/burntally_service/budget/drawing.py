@@ -220,7 +220,7 @@ def _newly_started(design: Design, lowered: Lowered, lines: list[Line]) -> tuple
 def _separations(lines: list[Line]) -> Iterator[tuple[int, int]]:
     """Yield where each group of parts that leave together begins in the ledger, and where it ends."""
     place = 0
-    for (kind, _), group in itertools.groupby(lines, key=lambda line: (line.kind, line.leg)):
+    for (kind, *_), group in itertools.groupby(lines, key=lambda line: (line.kind, line.leg, line.spare)):
         end = place + len(list(group))
         if kind == rows.LINE_SEPARATION:
             yield place, end

@@ -123,7 +123,8 @@ def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
         if target >= 0:
             books.branch_mass[target] += mass
         before = books.branch_mass[branch] + mass
-        entry = (float(target), 0.0, mass, before, books.branch_clock[branch], 0.0, 0.0)
+        # The last cell tells what leaves together from what leaves right after it.
+        entry = (float(target), 0.0, mass, before, books.branch_clock[branch], 0.0, float(highest))
         write_line(books, (LINE_SEPARATION, leg, stage), entry)
         books.flow_of[stage] = -1
         row = tables.stages[stage]
@@ -131,6 +132,17 @@ def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
         for load in range(row.first_load, row.end_load):
             books.usable[load] += books.held[load]
             books.held[load] = 0.0
+    if not _any_aboard(tables, books, branch):
+        # Nothing weighs nothing, whatever rounding has left over.
+        books.branch_mass[branch] = 0.0
+
+
+def _any_aboard(tables: Tables, books: Books, branch: int) -> bool:
+    """Tell whether a branch still has a stage."""
+    for stage in range(tables.n_stages):
+        if books.where[stage] == branch:
+            return True
+    return False
 
 
 def _branch_of(tables: Tables, books: Books, branch: int, highest: int) -> int:
