@@ -4,6 +4,7 @@ from typing import Any
 
 import msgspec
 import pytest
+
 from burntally.model.budget import Budget
 from burntally.model.design import Design
 from burntally_service.budget import draw_up
