@@ -1,10 +1,12 @@
 """Docking: what is left of a finished branch comes aboard, once it is there to be docked."""
 
+import math
 from typing import Any
 
 import pytest
 
 from burntally.model.budget import Budget
+from burntally_service.kernels.constants import G0
 from tests.unit.budget.designs import branch, budget_of, burn, design, findings, stage
 
 Plain = dict[str, Any]
@@ -57,3 +59,12 @@ def test_a_branch_of_a_branch_is_flown_before_it_is_docked() -> None:
     assert [branch(budget, name).legs[-1].paid for name in ("scout", "probe")] == [True, True]
     assert findings(budget, "part-absent") == []
     assert branch(budget).legs[1].mass_after > branch(budget).legs[1].mass_before
+
+
+def test_slack_before_a_docking_leaves_enough_for_what_comes_after() -> None:
+    hulk = {"name": "tug", "dry_mass": 900.0}
+    wait = {"of": "scout", "legs": [{"kind": "coast", "duration": 1.0}]}
+    legs = [burn(400.0, "scout"), AWAY, DOCK, burn(100.0, "scout")]
+    first = branch(budget_of(design(legs, stage("scout"), hulk, branches=[wait]))).legs[0]
+    # Nothing is lost on the way, so the stack has what a single burn would leave it.
+    assert first.slack == pytest.approx(320.0 * G0 * math.log(1800.0 / 1400.0) - 500.0, rel=1e-9, abs=0.0)

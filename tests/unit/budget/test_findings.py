@@ -215,3 +215,21 @@ def test_not_all_payers_are_gone_while_one_without_an_engine_is_aboard() -> None
     legs = [{"kind": "separate", "stages": ["kick"]}, burn(10.0, "kick", "frame")]
     plain = design(legs, stage("kick"), {"name": "frame", "dry_mass": 50.0}, stage())
     assert [found.code for found in budget_of(plain).findings if found.severity == "error"] == ["payer-dry"]
+
+
+@pytest.mark.parametrize("delta_v, owed", [(9e-10, 0.0), (2e-9, 2e-9)])
+def test_a_trifle_is_not_owed(delta_v: float, owed: float) -> None:
+    assert branch(budget_of(design([burn(delta_v)], {"name": "kick", "dry_mass": 50.0}))).owed == owed
+
+
+GAS = {"kind": "allowance", "category": "gas", "propellant": 5.0}
+
+
+def test_kilograms_are_owed_where_nobody_has_an_engine() -> None:
+    budget = budget_of(design([GAS], {"name": "kick", "dry_mass": 50.0}))
+    assert [found.code for found in budget.findings if found.severity == "error"] == ["leg-unpaid"]
+
+
+def test_kilograms_are_owed_where_nothing_is_aboard_any_more() -> None:
+    budget = budget_of(design([{"kind": "separate", "stages": ["tug"]}, GAS]))
+    assert [found.leg for found in findings(budget, "leg-unpaid")] == [1]

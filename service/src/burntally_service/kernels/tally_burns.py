@@ -224,7 +224,7 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
         lowest = stage
         if left < tolerance:
             return 0.0
-    return left
+    return left if left >= tolerance else 0.0
 
 
 def _leave_below(tables: Tables, books: Books, leg: int, at: tuple[int, int, int]) -> None:

@@ -55,6 +55,8 @@ NOTHING: Final = 0.0
 BUSY: Final = 1.0
 KNOWN: Final = 2.0
 MIXED: Final = 3.0
+DOCKED: Final = 4.0
+"""Mixed, and no more forgotten where the stage separates, since it comes back."""
 
 
 def slacks(tables: Tables, books: Books, walk: list[list[float]]) -> None:
@@ -135,7 +137,7 @@ def _slack_at(tables: Tables, books: Books, walk: list[list[float]], at: tuple[i
 
 def _is_mixed(walk: list[list[float]], stage: int, mask: float) -> bool:
     """Tell whether the reach of a stage is not its own, or was learnt with other engines lit than now."""
-    return walk[STATE][stage] == MIXED or (walk[STATE][stage] == KNOWN and walk[MASKS][stage] != mask)
+    return walk[STATE][stage] >= MIXED or (walk[STATE][stage] == KNOWN and walk[MASKS][stage] != mask)
 
 
 def _tail_for(tables: Tables, walk: list[list[float]], stage: int, leg: int) -> float:
@@ -191,17 +193,23 @@ def _walk_event(tables: Tables, books: Books, walk: list[list[float]], start: in
         if walk[TAIL][stage] > 0.0:
             walk[TAIL][stage] = SEARCH
         if kind == LINE_DOCKED:
-            walk[STATE][stage] = MIXED
+            walk[STATE][stage] = DOCKED
     if kind == LINE_SEPARATION:
-        walk[STATE][part] = NOTHING
+        if walk[STATE][part] != DOCKED:
+            walk[STATE][part] = NOTHING
         walk[TAIL][part] = 0.0
     elif kind == LINE_TAKEN:
         _walk_filling(tables, books, walk, start)
     elif kind == LINE_BOILED:
         if books.lines[start + MASK] > 0.0:
-            walk[STATE][tables.loads[part].stage] = MIXED
+            _mix(walk, tables.loads[part].stage)
     elif kind == LINE_HANDED and books.lines[start + KG] < books.lines[start + DELTA_V]:
-        walk[STATE][tables.loads[part].stage] = MIXED
+        _mix(walk, tables.loads[part].stage)
+
+
+def _mix(walk: list[list[float]], stage: int) -> None:
+    """Mark a stage whose reach is no longer its own."""
+    walk[STATE][stage] = max(walk[STATE][stage], MIXED)
 
 
 def _walk_filling(tables: Tables, books: Books, walk: list[list[float]], start: int) -> None:
@@ -225,7 +233,7 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
     leg = int(lines[start + LEG])
     if _is_mixed(walk, drawer, mask):
         # Other engines draw on the loads in other shares, so kilograms of one set are none of the other.
-        walk[STATE][drawer] = MIXED
+        _mix(walk, drawer)
     state = walk[STATE][drawer]
     if state <= BUSY or (state == KNOWN and spare < walk[REACH][drawer]):
         walk[STATE][drawer] = KNOWN
