@@ -126,6 +126,12 @@ def test_a_branch_weighs_what_its_stages_weigh(plain: Plain) -> None:
     assert mass == pytest.approx(books.books.branch_mass, rel=1e-9, abs=1e-9 * books.initial_mass)
 
 
+def charge(books: Drawn, leg: int) -> float:
+    """What a leg requires and what its rule adds."""
+    kept = books.books
+    return kept.required[leg] + kept.by_fraction[leg] + kept.by_floor[leg] + kept.by_fixed[leg]
+
+
 @given(designs())
 def test_what_is_charged_is_paid_or_owed(plain: Plain) -> None:
     books = drawn(plain)
@@ -137,17 +143,42 @@ def test_what_is_charged_is_paid_or_owed(plain: Plain) -> None:
     for leg, (branch, row) in enumerate(books.lowered.legs):
         # What is owed of kilograms was never charged as a delta-v.
         owed[branch] += 0.0 if row and row.kilograms > 0.0 else books.books.owed[leg]
-    charged = [sum(pair) for pair in zip(books.books.branch_charged, books.books.reserve, strict=True)]
+    charged = list(books.books.reserve)
+    for leg, (branch, _) in enumerate(books.lowered.legs):
+        charged[branch] += charge(books, leg)
     # Below 1e-9 m/s nothing is owed, and that may happen at every burn.
     assert [sum(pair) for pair in zip(paid, owed, strict=True)] == pytest.approx(charged, rel=1e-9, abs=1e-7)
 
 
 @given(designs())
-def test_every_leg_is_charged_what_it_requires_and_its_rule(plain: Plain) -> None:
-    for branch in branch_books(drawn(plain, with_slack=True), set()):
-        for leg in branch.legs:
-            added = leg.contingency
-            assert leg.charged == leg.required + (added.fraction + added.floor + added.fixed)
+def test_a_branch_is_charged_what_its_legs_are(plain: Plain) -> None:
+    books = drawn(plain)
+    charged = [0.0] * len(books.lowered.branches)
+    for leg, (branch, _) in enumerate(books.lowered.legs):
+        charged[branch] += charge(books, leg)
+    assert charged == pytest.approx(books.books.branch_charged, rel=1e-12, abs=0.0)
+
+
+@given(designs())
+def test_every_leg_has_the_contingency_of_its_rule(plain: Plain) -> None:
+    books = drawn(plain)
+    for leg, (_, row) in enumerate(books.lowered.legs):
+        if row and row.charged and row.rule.floor_on == "leg":
+            required = books.books.required[leg]
+            added = max(row.rule.fraction * required, row.rule.floor) + row.rule.fixed
+            assert charge(books, leg) == pytest.approx(required + added, rel=1e-12, abs=0.0)
+
+
+@given(designs())
+def test_a_floor_on_a_category_is_reached_once_in_a_branch(plain: Plain) -> None:
+    books = drawn(plain)
+    for branch in range(len(books.lowered.branches)):
+        legs = [(leg, row) for leg, row in books.legs_of(branch) if row.charged and row.rule.floor_on == "category"]
+        for rule in {row.rule_index: row.rule for _, row in legs}.values():
+            took = [leg for leg, row in legs if row.rule is rule]
+            shares = sum(rule.fraction * books.books.required[leg] for leg in took)
+            added = sum(charge(books, leg) - books.books.required[leg] - rule.fixed for leg in took)
+            assert added == pytest.approx(max(shares, rule.floor), rel=1e-9, abs=1e-9)
 
 
 @given(designs())
