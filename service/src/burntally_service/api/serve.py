@@ -15,6 +15,7 @@ __all__ = ["serve"]
 
 
 _SWITCH_INTERVAL_S: Final = 5e-4
+_COLLECT_AFTER: Final = 100_000
 
 
 def serve(host: str | None = None, port: int | None = None) -> None:
@@ -37,10 +38,12 @@ def serve(host: str | None = None, port: int | None = None) -> None:
     # process as killed, and a stop that was asked for is no failure.
     signal.signal(signal.SIGTERM, _already_stopped)
     app = create_app(settings)
-    # What has been imported stays, so the collector need not look at it again; and a request that computes in a thread
-    # gives way to the event loop ten times as often as by default, since each wait for it costs a whole interval.
+    # What has been imported stays, so the collector need not look at it again; a budget makes thousands of objects and
+    # no cycle, so it need not look often either; and a request that computes in a thread gives way to the event loop
+    # ten times as often as by default, since each wait for it costs a whole interval.
     gc.collect()
     gc.freeze()
+    gc.set_threshold(_COLLECT_AFTER)
     sys.setswitchinterval(_SWITCH_INTERVAL_S)
     uvicorn.run(
         app,
