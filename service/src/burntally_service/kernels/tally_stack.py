@@ -106,8 +106,9 @@ def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
     Examples
     --------
     >>> from burntally_service.kernels.tally_books import blank_books
-    >>> from burntally_service.kernels.tally_rows import LegRow
-    >>> tables = Tables(*([],) * 12, [LegRow(0, 0, 1, 0, -1, 0.0, 0.0, 0.0, 0, 0, 0)], [])
+    >>> from burntally_service.kernels.tally_rows import BranchRow, LegRow
+    >>> leg = LegRow(0, 0, 1, 0, -1, 0.0, 0.0, 0.0, 0, 0, 0)
+    >>> tables = Tables(*([],) * 11, [BranchRow(-1, 0.0, 0.0, 0)], [leg], [], n_branches=1)
     >>> detach(tables, blank_books(tables, 0), 0, -1)
     """
     branch = tables.legs[leg].branch
