@@ -139,6 +139,9 @@ def _end(tables: Tables, books: Books, leg: int) -> None:
 
 def _add(tables: Tables, books: Books, leg: int) -> None:
     """Burn the delta-v that slack is searched with; it raises no contingency, reserve or ignition of its own (M)."""
+    if books.added[0] <= 0.0:
+        # Nothing to burn, no burn: nothing may drop for it either (P4).
+        return
     owed = pay(tables, books, leg, ADDITION, books.added[0])
     books.added[1] = owed
     books.branch_owed[tables.legs[leg].branch] += owed
