@@ -260,7 +260,7 @@ def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
     Returns
     -------
     float
-        Sum over the intervals of one set of lit engines, [m/s].
+        Sum over the intervals of one set of lit engines, [m/s]; infinite where nothing but propellant is left to push.
 
     References
     ----------
@@ -282,6 +282,9 @@ def burn_out(tables: Tables, books: Books, stage: int, mass: float) -> float:
     while mdot > 0.0:
         time, first_dry = spare_of(tables, books, stage)
         kg = mdot * time
+        if kg >= mass:
+            # A stage that weighs nothing but its propellant: there is no end to its speed, and no answer.
+            return math.inf
         delta_v += thrust / mdot * math.log(mass / (mass - kg))
         mass -= kg
         row = tables.stages[stage]
