@@ -392,9 +392,20 @@ def _burners(draft: _Draft) -> tuple[list[rows.BurnerRow], list[int], list[int]]
             engines = _lit_engines(draft, account, stage)
             burner_of.append(len(burners) if engines else -1)
             if engines:
-                burners.append(rows.BurnerRow(stage, len(lit), len(lit) + len(engines)))
+                burners.append(_burner(draft, stage, engines, len(lit)))
                 lit.extend(engines)
     return burners, lit, burner_of
+
+
+def _burner(draft: _Draft, stage: int, engines: list[int], first_lit: int) -> rows.BurnerRow:
+    """The burner of some engines of a stage; a kind of engine alone on one load is marked."""
+    end_lit = first_lit + len(engines)
+    if len(engines) == 1:
+        row = draft.engines[engines[0]]
+        if row.end_feed - row.first_feed == 1:
+            mask = 1 << (engines[0] - draft.stages[stage].first_engine)
+            return rows.BurnerRow(stage, first_lit, end_lit, draft.feeds[row.first_feed].load, mask)
+    return rows.BurnerRow(stage, first_lit, end_lit)
 
 
 def _riding(draft: _Draft, index: int, payload: Payload) -> rows.PayloadRow:

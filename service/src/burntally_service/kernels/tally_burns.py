@@ -6,7 +6,7 @@ Every function here reads `Tables` and changes `Books`; the comments name the bo
 import math
 from typing import Final
 
-from burntally_service.kernels.tally_flow import light_flow, spare_of, wants_ignition, write_line
+from burntally_service.kernels.tally_flow import light_flow, lit_mask, spare_of, wants_ignition, write_line
 from burntally_service.kernels.tally_rows import (
     CONTINGENCY,
     KILOGRAMS,
@@ -54,22 +54,22 @@ def _ignite(tables: Tables, books: Books, leg: int, burner: int, mask: int) -> N
     row = tables.burners[burner]
     branch = tables.legs[leg].branch
     first = tables.stages[row.stage].first_engine
-    stamp = books.count[STAMP]
+    lit, engines = tables.lit, tables.engines
     # All are lit before any loss is taken, because the loss of one may leave dry what feeds another.
     for place in range(row.first_lit, row.end_lit):
-        engine = tables.lit[place]
+        engine = lit[place]
         if mask >> (engine - first) & 1:
             used = books.used[engine] + 1.0
             books.used[engine] = used
-            books.lit_at[engine] = stamp
-            if used >= tables.engines[engine].max_ignitions:
+            books.lit_at[engine] = books.count[STAMP]
+            if used >= engines[engine].max_ignitions:
                 books.flow_of[row.stage] = -1
     for place in range(row.first_lit, row.end_lit):
-        engine = tables.lit[place]
+        engine = lit[place]
         if mask >> (engine - first) & 1:
             lost = 0.0
             mass = books.branch_mass[branch]
-            if tables.engines[engine].loss_per_ignition > 0.0:
+            if engines[engine].loss_per_ignition > 0.0:
                 lost = _lose(tables, books, engine, row.stage)
                 books.branch_mass[branch] = mass - lost
             write_line(
@@ -80,6 +80,8 @@ def _ignite(tables: Tables, books: Books, leg: int, burner: int, mask: int) -> N
 def _lose(tables: Tables, books: Books, engine: int, stage: int) -> float:
     """Take the loss of one ignition out of an engine's feeds, at their ratio, until the first is dry."""
     row = tables.engines[engine]
+    if row.end_feed - row.first_feed == 1:
+        return _lose_lone(tables, books, engine, stage)
     time = row.count * row.loss_per_ignition / books.engine_flow[engine]
     for feed in range(row.first_feed, row.end_feed):
         time = min(time, books.usable[tables.feeds[feed].load] / books.feed_flow[feed])
@@ -95,6 +97,20 @@ def _lose(tables: Tables, books: Books, engine: int, stage: int) -> float:
         if left <= books.dry_mark[load]:
             books.flow_of[stage] = -1
     return lost
+
+
+def _lose_lone(tables: Tables, books: Books, engine: int, stage: int) -> float:
+    """Take the loss of one ignition out of the only load that feeds an engine."""
+    row = tables.engines[engine]
+    load = tables.feeds[row.first_feed].load
+    usable = books.usable[load]
+    kg = min(row.count * row.loss_per_ignition, usable)
+    left = usable - kg
+    books.usable[load] = left
+    books.lost[load] += kg
+    if left <= books.dry_mark[load]:
+        books.flow_of[stage] = -1
+    return kg
 
 
 def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int, float]) -> float:
@@ -134,6 +150,40 @@ def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int,
         _mark_unbalanced(tables, books, stage, first_dry)
         thrust, mdot, mask = light_flow(tables, books, burner)
     return amount
+
+
+def _burn_lone(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int, float]) -> float:
+    """Burn the only engine of a burner on its only load, until what is asked is paid or it is dry; return the rest.
+
+    What `_burn` does, without what one load needs none of: shares of a flow, and a first among loads to run dry.
+    """
+    purpose, amount = order
+    row = tables.burners[burner]
+    load = row.lone
+    branch = tables.legs[leg].branch
+    mass = books.branch_mass[branch]
+    speed = books.engine_speed[tables.lit[row.first_lit]]
+    spare = books.usable[load]
+    wanted = amount if purpose == KILOGRAMS else -mass * math.expm1(-amount / speed)
+    enough = wanted <= spare
+    kg = wanted if enough else spare
+    paid = amount
+    if purpose == KILOGRAMS:
+        paid = kg
+    elif not enough:
+        paid = speed * math.log(mass / (mass - kg))
+    left = spare - kg
+    books.usable[load] = left
+    books.burned[load] += kg
+    books.branch_mass[branch] = mass - kg
+    kind, told = (LINE_DRAW, 0.0) if purpose == KILOGRAMS else (LINE_BURN, paid)
+    write_line(books, (kind, leg, burner), (purpose, told, kg, mass, books.branch_clock[branch], row.mask, left))
+    if left <= books.dry_mark[load]:
+        # Others may feed on the same load.
+        books.flow_of[row.stage] = -1
+        if not enough:
+            _mark_unbalanced(tables, books, row.stage, load)
+    return 0.0 if enough else max(0.0, amount - paid)
 
 
 def _mark_unbalanced(tables: Tables, books: Books, stage: int, dry: int) -> None:
@@ -203,7 +253,7 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
         burner = tables.burner_of[base + stage]
         mask = 0
         if burner >= 0:
-            _, _, mask = light_flow(tables, books, burner)
+            mask = lit_mask(tables, books, burner)
         if mask == 0:
             # Only the open account passes a stage that merely lacks an ignition; named payers have a finding of their
             # own.
@@ -216,7 +266,10 @@ def pay(tables: Tables, books: Books, leg: int, purpose: int, amount: float) -> 
         if purpose == MANOEUVRE:
             _ignite(tables, books, leg, burner, mask)
         before = left
-        left = _burn(tables, books, leg, burner, (purpose, left))
+        if tables.burners[burner].lone >= 0:
+            left = _burn_lone(tables, books, leg, burner, (purpose, left))
+        else:
+            left = _burn(tables, books, leg, burner, (purpose, left))
         if left < before:
             if passed >= 0:
                 _mark_handover(tables, books, leg, (purpose, passed))

@@ -21,7 +21,7 @@ from burntally_service.kernels.tally_rows import (
     Tables,
 )
 
-__all__ = ["can_burn", "light_flow", "spare_of", "wants_ignition", "write_line"]
+__all__ = ["can_burn", "light_flow", "lit_mask", "spare_of", "wants_ignition", "write_line"]
 
 
 def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...]) -> None:
@@ -56,13 +56,14 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
     [1.0, 2.0, 3.0, 4.0]
     """
     count = books.count
-    start = count[LINES] * LINE_WIDTH
-    count[LINES] += 1
-    lines = books.lines
-    if count[LINES] <= count[ROOM]:
-        lines[start + KIND] = float(head[0])
-        lines[start + LEG] = float(head[1])
-        lines[start + PART] = float(head[2])
+    line = count[LINES]
+    count[LINES] = line + 1
+    if line < count[ROOM]:
+        start = line * LINE_WIDTH
+        lines = books.lines
+        lines[start + KIND] = head[0]
+        lines[start + LEG] = head[1]
+        lines[start + PART] = head[2]
         lines[start + PURPOSE] = entry[0]
         lines[start + DELTA_V] = entry[1]
         lines[start + KG] = entry[2]
@@ -112,6 +113,47 @@ def can_burn(tables: Tables, books: Books, engine: int) -> bool:
         if books.usable[load] <= books.dry_mark[load]:
             return False
     return True
+
+
+def lit_mask(tables: Tables, books: Books, burner: int) -> int:
+    """Which engines of a burner can burn together.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        Changed: what `light_flow` keeps, where it has to be asked.
+    burner : int
+        Index of the burner, [-].
+
+    Returns
+    -------
+    int
+        Bit n set: the stage's engine n can burn, [-].
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rule P1; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import BurnerRow, StageRow
+    >>> tables = Tables([], [StageRow(0, 0, 0, 0, 0)], *([],) * 4, [BurnerRow(0, 0, 0)], *([],) * 7, n_stages=1)
+    >>> lit_mask(tables, blank_books(tables, 0), 0)
+    0
+    """
+    row = tables.burners[burner]
+    load = row.lone
+    if load < 0:
+        _, _, mask = light_flow(tables, books, burner)
+        return mask
+    engine = tables.lit[row.first_lit]
+    if books.usable[load] <= books.dry_mark[load]:
+        return 0
+    is_out = books.used[engine] >= tables.engines[engine].max_ignitions
+    return 0 if is_out and books.lit_at[engine] != books.count[STAMP] else row.mask
 
 
 def light_flow(tables: Tables, books: Books, burner: int) -> tuple[float, float, int]:

@@ -158,11 +158,17 @@ class PayloadRow(Struct, frozen=True, gc=False):
 
 
 class BurnerRow(Struct, frozen=True, gc=False):
-    """The engines that an account lights on one stage: a slice of `Tables.lit`."""
+    """The engines that an account lights on one stage: a slice of `Tables.lit`.
+
+    Where that is one kind of engine that draws on one load, `lone` is that load and `mask` the engine's bit, since
+    almost every burn is of that kind and then has a short way; -1 and 0 otherwise.
+    """
 
     stage: int
     first_lit: int
     end_lit: int
+    lone: int = -1
+    mask: int = 0
 
 
 class BranchRow(Struct, frozen=True, gc=False):
@@ -270,6 +276,7 @@ class Books(Struct, frozen=True):
     used: list[float]
     lit_at: list[float]
     engine_flow: list[float]
+    engine_speed: list[float]
     feed_flow: list[float]
     part_mass: list[float]
     payload_on: list[int]
@@ -335,6 +342,7 @@ BLANK: Final[dict[str, tuple[str, float]]] = {
     "used": ("engines", 0.0),
     "lit_at": ("engines", 0.0),
     "engine_flow": ("engines", 0.0),
+    "engine_speed": ("engines", 0.0),
     "feed_flow": ("feeds", 0.0),
     "part_mass": ("parts", 0.0),
     "payload_on": ("payloads", NOT_FLOWN),

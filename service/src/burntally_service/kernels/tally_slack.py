@@ -122,12 +122,14 @@ def _slack_at(tables: Tables, books: Books, walk: list[list[float]], at: tuple[i
         return 0.0
     state = walk[STATE][stage]
     reach = books.spare[mark]
-    if _is_mixed(walk, stage, books.spare_mask[mark]):
+    if state >= MIXED or (state == KNOWN and walk[MASKS][stage] != books.spare_mask[mark]):
         return SEARCH
+    tail = 0.0
     if state == KNOWN and walk[REACH][stage] <= reach:
         reach = walk[REACH][stage]
-        tail = _tail_for(tables, walk, stage, leg)
-    else:
+        if walk[TAIL][stage] != 0.0:
+            tail = _tail_for(tables, walk, stage, leg)
+    elif books.spare_more[mark] != NO_MORE:
         tail = _tail_after(tables, books, walk, (mark, leg, state))
     if tail < 0.0:
         return SEARCH
@@ -175,9 +177,10 @@ def _walk_lines(tables: Tables, books: Books, walk: list[list[float]], at: tuple
     last, first, mark = at
     for line in range(last, first - 1, -1):
         start = line * LINE_WIDTH
-        kind = int(books.lines[start + KIND])
+        kind = books.lines[start + KIND]
         if kind == LINE_BURN:
-            _walk_draw(tables, books, walk, (start, mark))
+            if not _goes_on(tables, books.lines, walk, start):
+                _walk_draw(tables, books, walk, (start, mark))
         elif kind != LINE_IGNITION or books.lines[start + KG] > 0.0:
             _walk_event(tables, books, walk, start)
             if kind == LINE_DRAW:
@@ -257,6 +260,27 @@ def _walk_draw(tables: Tables, books: Books, walk: list[list[float]], at: tuple[
     last[2] = mass
     last[3] = walk[REACH][drawer] if walk[STATE][drawer] == KNOWN else SEARCH
     last[4] = walk[TAIL][drawer]
+
+
+def _goes_on(tables: Tables, lines: list[float], walk: list[list[float]], start: int) -> bool:
+    """Carry on from a burn to the same stage's burn before it, where that changes nothing but how much it could lose.
+
+    Most burns are such, and the rest of the walk need not look at them.
+    """
+    last = walk[LAST]
+    drawer = tables.burners[int(lines[start + PART])].stage
+    reach = walk[REACH][drawer]
+    if last[0] != drawer or walk[STATE][drawer] != KNOWN or walk[TAIL][drawer] != 0.0:
+        return False
+    if lines[start + MASK] != walk[MASKS][drawer] or lines[start + SPARE] < reach:
+        return False
+    mass = lines[start + MASS]
+    reach *= mass / (mass - lines[start + KG])
+    walk[REACH][drawer] = reach
+    last[1] = lines[start + LEG]
+    last[2] = mass
+    last[3] = reach
+    return True
 
 
 def _mix_others(tables: Tables, walk: list[list[float]], drawer: int) -> None:

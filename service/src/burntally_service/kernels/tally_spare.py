@@ -1,7 +1,7 @@
 """What an addition at the end of a leg would be paid with: noted by the tally, read by the walk for slack."""
 
 from burntally_service.kernels.tally_books import stage_mass
-from burntally_service.kernels.tally_flow import light_flow, spare_of
+from burntally_service.kernels.tally_flow import light_flow, lit_mask, spare_of
 from burntally_service.kernels.tally_rows import NEXT_STAGE, UNCLEAR, Books, Tables
 
 __all__ = ["note_spare"]
@@ -48,9 +48,9 @@ def note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
         if books.where[stage] != row.branch:
             continue
         burner = tables.burner_of[base + stage]
-        thrust, mdot, mask = 0.0, 0.0, 0
+        mask = 0
         if burner >= 0:
-            thrust, mdot, mask = light_flow(tables, books, burner)
+            mask = lit_mask(tables, books, burner)
         if mask == 0:
             below = True
         elif books.spare_stage[mark] >= 0:
@@ -61,14 +61,24 @@ def note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
                 books.spare_more[mark] = UNCLEAR
                 return
         else:
-            time, first_dry = spare_of(tables, books, stage)
-            books.spare[mark] = mdot * time
-            books.spare_speed[mark] = thrust / mdot
+            spare, speed, first_dry = _spare_by(tables, books, burner)
+            books.spare[mark] = spare
+            books.spare_speed[mark] = speed
             books.spare_mass[mark] = books.branch_mass[row.branch]
             books.spare_stage[mark] = stage
             books.spare_mask[mark] = mask
             if below or _burns_on(tables, burner, first_dry):
                 books.spare_more[mark] = UNCLEAR
+
+
+def _spare_by(tables: Tables, books: Books, burner: int) -> tuple[float, float, int]:
+    """Mass that a burner, of which something can burn, can burn before a load is dry [kg], exhaust speed, that load."""
+    row = tables.burners[burner]
+    if row.lone >= 0:
+        return books.usable[row.lone], books.engine_speed[tables.lit[row.first_lit]], row.lone
+    thrust, mdot, _ = light_flow(tables, books, burner)
+    time, first_dry = spare_of(tables, books, row.stage)
+    return mdot * time, thrust / mdot, first_dry
 
 
 def _note_next(tables: Tables, books: Books, at: tuple[int, int], by: tuple[int, int]) -> None:
@@ -78,8 +88,7 @@ def _note_next(tables: Tables, books: Books, at: tuple[int, int], by: tuple[int,
     branch = tables.legs[leg].branch
     payer = books.spare_stage[mark]
     named_later = tables.last_named[branch * tables.n_stages + payer] > leg
-    thrust, mdot, mask = light_flow(tables, books, burner)
-    time, first_dry = spare_of(tables, books, stage)
+    spare, speed, first_dry = _spare_by(tables, books, burner)
     above, adjoining = _above(tables, books, branch, payer)
     # What stands between the two may drop with the payer, or keep it aboard.
     if tables.stages[payer].by_leg or named_later or adjoining != stage or _burns_on(tables, burner, first_dry):
@@ -87,9 +96,9 @@ def _note_next(tables: Tables, books: Books, at: tuple[int, int], by: tuple[int,
         return
     books.spare_more[mark] = NEXT_STAGE
     books.next_stage[mark] = stage
-    books.next_mask[mark] = mask
-    books.next_spare[mark] = mdot * time
-    books.next_speed[mark] = thrust / mdot
+    books.next_mask[mark] = lit_mask(tables, books, burner)
+    books.next_spare[mark] = spare
+    books.next_speed[mark] = speed
     books.next_mass[mark] = above
 
 
