@@ -82,14 +82,15 @@ def design(*, with_units: bool) -> bytes:
 
 
 @contextmanager
-def server(code: str) -> Iterator[int]:
-    """Start a server on a free port and stop it in the end."""
-    with subprocess.Popen(
-        [sys.executable, "-c", code], stderr=subprocess.PIPE, stdout=subprocess.DEVNULL, text=True
-    ) as process:
+def server(code: str, folder: Path) -> Iterator[int]:
+    """Start a server on a free port and stop it in the end; its log goes to a file, as a pipe would fill."""
+    path = folder / f"{len(list(folder.iterdir()))}.log"
+    with path.open("wb") as log, subprocess.Popen([sys.executable, "-c", code], stderr=log) as process:
         try:
-            assert process.stderr is not None
-            yield next(int(found[1]) for line in process.stderr if (found := ADDRESS.search(line)))
+            while not (found := ADDRESS.search(path.read_text(encoding="utf-8"))):
+                assert process.poll() is None
+                time.sleep(0.05)
+            yield int(found[1])
         finally:
             process.kill()
 
@@ -144,7 +145,7 @@ def test_a_budget_costs_a_few_echoes(
     with_units: bool, promised: float, tmp_path: Path, capsys: pytest.CaptureFixture[str]
 ) -> None:
     body = design(with_units=with_units)
-    with server(ECHO) as echo, server(SERVICE) as service:
+    with server(ECHO, tmp_path) as echo, server(SERVICE, tmp_path) as service:
         pairs = [(rate(service, body, tmp_path), rate(echo, body, tmp_path)) for _ in range(RUNS)]
     best, peer = max(pair[0] for pair in pairs), max(pair[1] for pair in pairs)
     with capsys.disabled():

@@ -181,8 +181,8 @@ def test_a_header_that_httpx_does_not_know_arrives(ask: Ask) -> None:
 
 def test_a_token_is_sent(ask: Ask) -> None:
     script = Script(good())
-    ask(script, "bodies", token="open sesame")  # noqa: S106 -- invented
-    assert script.asked[0].headers["authorization"] == "Bearer open sesame"
+    ask(script, "bodies", token="open-sesame")  # noqa: S106 -- invented
+    assert script.asked[0].headers["authorization"] == "Bearer open-sesame"
 
 
 def test_one_in_ten_requests_may_fail(ask: Ask, pauses: list[float]) -> None:

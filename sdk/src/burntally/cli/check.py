@@ -1,5 +1,6 @@
 """`burntally check`: the budgets of design files, and an exit code that says whether they close."""
 
+import os
 import sys
 from argparse import ArgumentParser, ArgumentTypeError, Namespace
 from pathlib import Path
@@ -15,6 +16,7 @@ __all__ = ["add_arguments", "run"]
 
 # A person, or a pipeline that pays by the minute, waits: fewer tries than a program would make.
 _TRIES: Final = 3
+_VARIABLE: Final = "BURNTALLY_TOKEN"
 
 
 def add_arguments(parser: ArgumentParser) -> None:
@@ -27,7 +29,10 @@ def add_arguments(parser: ArgumentParser) -> None:
         help="text for people (default), or JSON: one line for each file, null where it is no design",
     )
     parser.add_argument(
-        "--server", metavar="URL", type=_address, help="ask the service at this address, not the installed one"
+        "--server",
+        metavar="URL",
+        type=_address,
+        help=f"ask the service at this address, with the token in {_VARIABLE} if any, not the installed one",
     )
 
 
@@ -48,7 +53,7 @@ def run(arguments: Namespace) -> ExitCode:
     Returns
     -------
     ExitCode
-        The worst of all files.
+        The worst of all files; usage where there is a token that cannot be sent.
 
     Raises
     ------
@@ -57,7 +62,15 @@ def run(arguments: Namespace) -> ExitCode:
     """
     from burntally.client import connect
 
-    with connect(arguments.server, tries=_TRIES) as client:
+    # From the environment alone, since every process of the machine may read another's arguments. A service that is
+    # started from the same environment may take several tokens; the first is as good as any.
+    tokens = os.environ.get(_VARIABLE, "").split()
+    try:
+        connected = connect(arguments.server, tries=_TRIES, token=tokens[0] if tokens else None)
+    except ValueError as error:
+        print(f"burntally check: {_VARIABLE}: {error}", file=sys.stderr)
+        return ExitCode.USAGE
+    with connected as client:
         return max(_check(client, path, arguments) for path in arguments.files)
 
 

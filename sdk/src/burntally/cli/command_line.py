@@ -68,13 +68,14 @@ def _run(arguments: Namespace) -> ExitCode:
         RateLimited,
         ServiceMissing,
         TimedOut,
+        Unauthorized,
         Unavailable,
     )
 
     try:
         code: ExitCode = arguments.run(arguments)
         sys.stdout.flush()
-    except (ConnectionFailed, RateLimited, ServiceMissing, TimedOut, Unavailable) as error:
+    except (ConnectionFailed, RateLimited, ServiceMissing, TimedOut, Unauthorized, Unavailable) as error:
         return _told(error, ExitCode.NOT_REACHABLE)
     except NotFound:
         told = "nothing answers to this path; --server takes an address without one, as http://127.0.0.1:8463"

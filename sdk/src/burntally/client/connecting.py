@@ -40,7 +40,7 @@ def connect(
     transport : httpx2.BaseTransport or None
         In place of the network, for tests and proxies.
     token : str or None
-        Sent as a bearer token, for a service behind a proxy that asks for one.
+        Sent as a bearer token to this address alone, for a service that asks for one.
 
     Returns
     -------
@@ -50,7 +50,7 @@ def connect(
     Raises
     ------
     ValueError
-        The address is not one of http or https.
+        The address is not one of http or https, or the token holds what a header field cannot.
     ServiceMissing
         No address was given and no service is installed.
 
@@ -60,8 +60,10 @@ def connect(
     >>> with connect() as client:
     ...     earth = client.body("earth")
     """
-    sender: Sender = InProcessSender(installed(_ENTRY_POINT)) if url is None else HttpSender(_checked(url), transport)
-    return Client(sender, _settings(timeout_s=timeout_s, tries=tries, token=token))
+    sender: Sender = (
+        InProcessSender(installed(_ENTRY_POINT)) if url is None else HttpSender(_checked(url), transport, token=token)
+    )
+    return Client(sender, _settings(timeout_s=timeout_s, tries=tries))
 
 
 def connect_async(
@@ -95,14 +97,16 @@ def connect_async(
     Raises
     ------
     ValueError
-        The address is not one of http or https.
+        The address is not one of http or https, or the token holds what a header field cannot.
     ServiceMissing
         No address was given and no service is installed.
     """
     sender: AsyncSender = (
-        AsyncInProcessSender(installed(_ENTRY_POINT)) if url is None else AsyncHttpSender(_checked(url), transport)
+        AsyncInProcessSender(installed(_ENTRY_POINT))
+        if url is None
+        else AsyncHttpSender(_checked(url), transport, token=token)
     )
-    return AsyncClient(sender, _settings(timeout_s=timeout_s, tries=tries, token=token))
+    return AsyncClient(sender, _settings(timeout_s=timeout_s, tries=tries))
 
 
 def _checked(url: str) -> str:
@@ -111,5 +115,5 @@ def _checked(url: str) -> str:
     return url
 
 
-def _settings(*, timeout_s: float, tries: int, token: str | None) -> ClientSettings:
-    return ClientSettings(timeout_s=timeout_s, tries=tries, token=token, user_agent=f"burntally/{__version__}")
+def _settings(*, timeout_s: float, tries: int) -> ClientSettings:
+    return ClientSettings(timeout_s=timeout_s, tries=tries, user_agent=f"burntally/{__version__}")

@@ -12,6 +12,7 @@
         └── StatusError           the service answered with a problem
             ├── InvalidRequest      400: breaks the contract; `violations` names every field at fault
             │   └── InconsistentRequest  422: each field fits, and together they break a rule
+            ├── Unauthorized        401: no token that lets in
             ├── NotFound            404
             ├── MethodNotAllowed    405
             ├── NotAcceptable       406
@@ -52,6 +53,7 @@ __all__ = [
     "StatusError",
     "TimedOut",
     "TooLarge",
+    "Unauthorized",
     "Unavailable",
     "Uncomputable",
     "UncomputableError",
@@ -154,6 +156,12 @@ class InconsistentRequest(InvalidRequest):
     code: ClassVar[str] = "inconsistent-request"
 
 
+class Unauthorized(StatusError):
+    """The service asks for a token, and was shown none that lets in."""
+
+    code: ClassVar[str] = "unauthorized"
+
+
 class NotFound(StatusError):
     """Nothing of that name is there."""
 
@@ -225,6 +233,7 @@ _BY_CODE: Final[dict[str, type[StatusError]]] = {
     for kind in (
         InvalidRequest,
         InconsistentRequest,
+        Unauthorized,
         NotFound,
         MethodNotAllowed,
         NotAcceptable,
@@ -240,6 +249,7 @@ _BY_CODE: Final[dict[str, type[StatusError]]] = {
 }
 _BY_STATUS: Final[dict[int, type[StatusError]]] = {
     400: InvalidRequest,
+    401: Unauthorized,
     404: NotFound,
     405: MethodNotAllowed,
     406: NotAcceptable,

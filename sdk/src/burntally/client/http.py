@@ -24,12 +24,14 @@ class HttpSender:
         Address of the service.
     transport : httpx2.BaseTransport or None
         In place of the network, for tests and proxies.
+    token : str or None
+        Sent as a bearer token. It is added here, past everything that an error or a log may show.
     """
 
-    def __init__(self, url: str, transport: "httpx2.BaseTransport | None") -> None:
+    def __init__(self, url: str, transport: "httpx2.BaseTransport | None", *, token: str | None = None) -> None:
         import httpx2
 
-        self._http = httpx2.Client(base_url=url, transport=transport)
+        self._http = httpx2.Client(base_url=url, transport=transport, headers=_authorization(token))
 
     def send_once(self, request: Request, timeout_s: float) -> Outcome:
         """Send once; a fault of the connection is an outcome, so that the retry rule can weigh it."""
@@ -68,12 +70,14 @@ class AsyncHttpSender:
         Address of the service.
     transport : httpx2.AsyncBaseTransport or None
         In place of the network, for tests and proxies.
+    token : str or None
+        Sent as a bearer token.
     """
 
-    def __init__(self, url: str, transport: "httpx2.AsyncBaseTransport | None") -> None:
+    def __init__(self, url: str, transport: "httpx2.AsyncBaseTransport | None", *, token: str | None = None) -> None:
         import httpx2
 
-        self._http = httpx2.AsyncClient(base_url=url, transport=transport)
+        self._http = httpx2.AsyncClient(base_url=url, transport=transport, headers=_authorization(token))
 
     async def send_once(self, request: Request, timeout_s: float) -> Outcome:
         """Send once; a fault of the connection is an outcome, so that the retry rule can weigh it."""
@@ -99,6 +103,15 @@ class AsyncHttpSender:
     async def close(self) -> None:
         """Close the connection."""
         await self._http.aclose()
+
+
+def _authorization(token: str | None) -> dict[str, str]:
+    if token is None:
+        return {}
+    # Sent as it is, it would be refused below, in words that quote it.
+    if not (token.isascii() and token.isprintable() and token) or " " in token:
+        raise ValueError("a token is of visible ASCII characters, without spaces")
+    return {"authorization": f"Bearer {token}"}
 
 
 def _timeout(timeout_s: float) -> "httpx2.Timeout":

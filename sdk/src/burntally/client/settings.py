@@ -27,14 +27,11 @@ class ClientSettings:
         The most tries of a call.
     user_agent : str
         How the client names itself.
-    token : str or None
-        Sent as a bearer token.
     """
 
     timeout_s: float
     tries: int
     user_agent: str
-    token: str | None = None
 
     def request(
         self,
@@ -47,8 +44,6 @@ class ClientSettings:
     ) -> Request:
         """Build a request with this client's header fields."""
         headers = {"accept": accept, "content-type": media_type, "user-agent": self.user_agent}
-        if self.token is not None:
-            headers["authorization"] = f"Bearer {self.token}"
         return request_for(operation, body, name=name, headers=headers)
 
     def retries(self, timeout_s: float | None) -> Retries:

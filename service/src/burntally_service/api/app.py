@@ -11,6 +11,7 @@ from litestar.exceptions import HTTPException
 from burntally_service import operations
 from burntally_service.api.edge import Edge
 from burntally_service.api.examples import example_bytes
+from burntally_service.api.metrics import Metrics
 from burntally_service.api.pages import page_routes
 from burntally_service.api.problems import problem_response
 from burntally_service.api.routes import operation_routes
@@ -33,8 +34,12 @@ def create_app(settings: Settings | None = None) -> Edge:
         The application behind its edge. It is ready once its lifespan has started.
     """
     settings = settings_from() if settings is None else settings
+    metrics = Metrics()
     application = Litestar(
-        route_handlers=[*operation_routes(operations.OPERATIONS.values(), settings), *page_routes()],
+        route_handlers=[
+            *operation_routes(operations.OPERATIONS.values(), settings),
+            *page_routes(metrics if settings.metrics else None),
+        ],
         exception_handlers={HTTPException: problem_response, Exception: problem_response},
         lifespan=[_ready],
         logging_config=None,
@@ -42,7 +47,7 @@ def create_app(settings: Settings | None = None) -> Edge:
         request_max_body_size=settings.max_body_bytes,
         state=State({"ready": False}),
     )
-    return Edge(application)
+    return Edge(application, settings=settings, metrics=metrics)
 
 
 @asynccontextmanager

@@ -33,8 +33,36 @@ _TAGS: Final = {
     "rules": "Presets of rules, from published margin policies.",
 }
 _LISTED_BY: Final = {"list_bodies": ("get_body", "bodies"), "list_rules": ("get_rules", "presets")}
+_BEARER: Final = {
+    "type": "http",
+    "scheme": "bearer",
+    "description": "A token that the operator of the service gave out, where it asks for one (RFC 6750).",
+}
+_PROBLEM_HEADERS: Final[Node] = {
+    "WWW-Authenticate": {
+        "description": "How to ask for what is refused without a token.",
+        "required": True,
+        "schema": {"type": "string", "maxLength": 128, "pattern": "^Bearer "},
+    },
+    "Retry-After": {
+        "description": "Seconds to wait.",
+        "required": True,
+        "schema": {"type": "integer", "minimum": 1, "maximum": 3600},
+    },
+    "RateLimit": {
+        "description": "Requests left, and seconds until there are more (draft-ietf-httpapi-ratelimit-headers-10).",
+        "required": True,
+        "schema": {"type": "string", "maxLength": 64},
+    },
+    "RateLimit-Policy": {
+        "description": "Requests that a caller has in how many seconds (draft-ietf-httpapi-ratelimit-headers-10).",
+        "required": True,
+        "schema": {"type": "string", "maxLength": 64},
+    },
+}
+_HEADERS_OF: Final = {401: ("WWW-Authenticate",), 429: ("Retry-After", "RateLimit", "RateLimit-Policy")}
 _STATUSES: Final = {
-    "all": ("invalid-request", "not-acceptable", "internal-error"),
+    "all": ("invalid-request", "unauthorized", "not-acceptable", "rate-limited", "internal-error"),
     "named": ("not-found",),
     "body": (
         "request-timeout",
@@ -63,7 +91,7 @@ def document() -> Node:
         "jsonSchemaDialect": "https://spec.openapis.org/oas/3.1/dialect/base",
         "info": _info(),
         "servers": [{"url": "/", "description": "This service."}],
-        "security": [],
+        "security": [{}, {"bearer": []}],
         "tags": [{"name": name, "description": text} for name, text in _TAGS.items()],
         "paths": paths,
         "components": {
@@ -71,7 +99,8 @@ def document() -> Node:
                 [row.request for row in operations if row.takes_body and row.request],
                 [*(row.response for row in operations), Problem],
             ),
-            "headers": _headers(),
+            "headers": _headers() | _PROBLEM_HEADERS,
+            "securitySchemes": {"bearer": _BEARER},
             "responses": {
                 _response_name(kinds): _problem(kinds)
                 for kinds in _by_status(code for row in operations for code in _codes(row))
@@ -198,7 +227,10 @@ def _problem(kinds: tuple[ProblemType, ...]) -> Node:
     schema = {"$ref": "#/components/schemas/Problem"}
     return {
         "description": " Or: ".join(f"{kind.title} (`{kind.code}`)." for kind in kinds),
-        "headers": {"X-Request-Id": {"$ref": "#/components/headers/X-Request-Id"}},
+        "headers": {
+            name: {"$ref": f"#/components/headers/{name}"}
+            for name in ("X-Request-Id", *_HEADERS_OF.get(kinds[0].status, ()))
+        },
         "content": {PROBLEM_JSON: {"schema": schema, "examples": examples}},
     }
 

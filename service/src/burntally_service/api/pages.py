@@ -18,6 +18,7 @@ from burntally.model.decode import JSON
 from burntally_service.api import docs, openapi
 from burntally_service.api.exchange import AnyRequest, entity_tag, is_known
 from burntally_service.api.media import chosen_media_type
+from burntally_service.api.metrics import EXPOSITION, Metrics
 from burntally_service.api.problems import PROBLEMS, ProblemError, ProblemType
 
 __all__ = ["page_routes"]
@@ -53,8 +54,14 @@ _PAGES: Final = (
 )
 
 
-def page_routes() -> list[HTTPRouteHandler]:
-    """Make the routes of the pages."""
+def page_routes(metrics: Metrics | None = None) -> list[HTTPRouteHandler]:
+    """Make the routes of the pages.
+
+    Parameters
+    ----------
+    metrics : Metrics or None
+        What `/metrics` tells; None: there is no such page.
+    """
     told: list[tuple[str, str, Callable[..., ASGIApp]]] = [
         ("/", "show_index", _index),
         ("/healthz", "check_health", _health),
@@ -62,6 +69,8 @@ def page_routes() -> list[HTTPRouteHandler]:
         ("/problems", "list_problems", _problem_list),
         ("/problems/{code:str}", "get_problem", _problem_page),
     ]
+    if metrics is not None:
+        told.append(("/metrics", "show_metrics", _metrics_page(metrics)))
     return [_page_route(page) for page in _PAGES] + [_route(path, name, handle) for path, name, handle in told]
 
 
@@ -102,6 +111,15 @@ def _readiness(request: AnyRequest) -> ASGIApp:
     if not request.app.state.ready:
         raise ProblemError("not-ready", "the service is starting or stopping", headers=_retry_after())
     return _uncached({"status": "ready"})
+
+
+def _metrics_page(metrics: Metrics) -> Callable[[AnyRequest], ASGIApp]:
+    def handle(request: AnyRequest) -> ASGIApp:  # noqa: ARG001 - as above
+        return ASGIResponse(
+            body=metrics.exposition(), headers={"Content-Type": EXPOSITION, "Cache-Control": "no-store"}
+        )
+
+    return handle
 
 
 def _problem_list(request: AnyRequest) -> ASGIApp:

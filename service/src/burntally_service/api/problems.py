@@ -52,6 +52,15 @@ _TYPES: Final = (
         ),
     ),
     ProblemType(
+        code="unauthorized",
+        status=401,
+        title="A token is asked for",
+        description=(
+            "Send `Authorization: Bearer` with a token that the operator of the service gave out (RFC 6750). Health, "
+            "the contract and its documentation want none."
+        ),
+    ),
+    ProblemType(
         code=NotFoundError.code,
         status=404,
         title="Nothing is there",
@@ -118,6 +127,15 @@ _TYPES: Final = (
         ),
     ),
     ProblemType(
+        code="rate-limited",
+        status=429,
+        title="Too many requests",
+        description=(
+            "You have made as many requests as the operator of the service lets one caller make in a minute. Try again "
+            "after the time in `Retry-After`; `RateLimit` tells with each answer how many are left."
+        ),
+    ),
+    ProblemType(
         code="internal-error",
         status=500,
         title="The service failed",
@@ -162,6 +180,7 @@ class ProblemError(Exception):
 class Refusal:
     """A problem, ready to be sent."""
 
+    code: str
     status: int
     body: bytes
     headers: dict[str, str]
@@ -172,7 +191,7 @@ def refusal_of(error: Exception, request_id: str) -> Refusal:
     code, detail, violations, headers = _read(error)
     kind = PROBLEMS[code]
     if code == "internal-error":
-        _LOG.error("request %s failed", request_id, exc_info=error)
+        _LOG.error("request failed", extra={"fields": {"request_id": request_id}}, exc_info=error)
     if kind.status in _CLOSES_CONNECTION:
         headers = {**headers, "Connection": "close"}
     problem = Problem(
@@ -185,12 +204,13 @@ def refusal_of(error: Exception, request_id: str) -> Refusal:
         request_id=request_id,
     )
     body = msgspec.json.encode(problem)
-    return Refusal(status=kind.status, body=body, headers={**headers, "Cache-Control": "no-store"})
+    return Refusal(code=code, status=kind.status, body=body, headers={**headers, "Cache-Control": "no-store"})
 
 
 def problem_response(request: Request[Any, Any, Any], error: Exception) -> Response[bytes]:
     """Answer an exception that came out of a route, in the shape that the framework's exception handlers have."""
     refusal = refusal_of(error, request.scope["state"]["request_id"])
+    request.scope["state"]["problem"] = refusal.code
     return Response(content=refusal.body, status_code=refusal.status, media_type=PROBLEM_JSON, headers=refusal.headers)
 
 

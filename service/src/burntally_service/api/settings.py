@@ -1,16 +1,25 @@
 """The settings of the service: read once from the environment, and checked where they are read."""
 
 import os
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
+from difflib import get_close_matches
 from pathlib import Path
 from typing import Annotated, Any, Final, Literal
 
 import msgspec
 from msgspec import Meta, Struct
 
+from burntally_service.api.callers import Networks
+from burntally_service.api.tokens import Tokens
+
 __all__ = ["PREFIX", "Settings", "SettingsError", "settings_from"]
 
 PREFIX: Final = "BURNTALLY_"
+
+_FILE: Final = "_FILE"
+# What is never told again, whatever is wrong with it.
+_SECRET: Final = frozenset({"token"})
+_READERS: Final[dict[type, Callable[[str], object]]] = {Networks: Networks.read, Tokens: Tokens.read}
 
 
 class SettingsError(ValueError):
@@ -30,6 +39,20 @@ class Settings(Struct, frozen=True, kw_only=True):
     log_level: Annotated[
         Literal["critical", "error", "warning", "info", "debug"], Meta(description="Least severity that is logged.")
     ] = "info"
+    log_format: Annotated[
+        Literal["auto", "json", "text"], Meta(description="Form of the log; auto: text at a terminal, else JSON.")
+    ] = "auto"
+    metrics: Annotated[bool, Meta(description="Whether `/metrics` is there.")] = True
+    token: Annotated[Tokens, Meta(description="Tokens that let a caller in, one a line; none: nobody is asked.")] = (
+        Tokens()
+    )
+    rate_per_minute: Annotated[
+        int, Meta(ge=0, le=1_000_000, description="Requests that a caller may make in a minute; 0: any number.")
+    ] = 0
+    trusted_proxies: Annotated[
+        Networks,
+        Meta(description="Addresses or networks of proxies whose `X-Forwarded-For` and `-Proto` are believed."),
+    ] = Networks()
 
 
 def settings_from(environment: Mapping[str, str] | None = None, **flags: object) -> Settings:
@@ -50,32 +73,54 @@ def settings_from(environment: Mapping[str, str] | None = None, **flags: object)
     Raises
     ------
     SettingsError
-        A value cannot be read; the message names its variable.
+        A value cannot be read, or a variable of our prefix is none of ours; the message names the variable. A
+        mistyped name would otherwise leave a door open that its owner believes shut.
     """
     variables = os.environ if environment is None else environment
+    _check_names(variables)
     given: dict[str, Any] = {name: value for name, value in flags.items() if value is not None}
     for name in Settings.__struct_fields__:
         if name not in given and (text := _text_of(PREFIX + name.upper(), variables)) is not None:
             given[name] = text
     for name, value in given.items():
         _check(name, value)
-    return msgspec.convert(given, Settings, strict=False)
+    return _converted(given)
+
+
+def _check_names(variables: Mapping[str, str]) -> None:
+    known = [PREFIX + name.upper() for name in Settings.__struct_fields__]
+    for variable in variables:
+        if variable.startswith(PREFIX) and variable.removesuffix(_FILE) not in known:
+            near = get_close_matches(variable.removesuffix(_FILE), known, n=1)
+            hint = f"; did you mean {near[0]}?" if near else ""
+            raise SettingsError(f"{variable}: there is no such setting{hint}")
 
 
 def _text_of(variable: str, variables: Mapping[str, str]) -> str | None:
-    path = variables.get(variable + "_FILE")
+    path = variables.get(variable + _FILE)
     if path is None:
         return variables.get(variable)
     if variable in variables:
-        raise SettingsError(f"{variable} and {variable}_FILE are both set; set one of them")
+        raise SettingsError(f"{variable} and {variable}{_FILE} are both set; set one of them")
     try:
         return Path(path).read_text(encoding="utf-8").strip()
     except (OSError, UnicodeDecodeError) as error:
-        raise SettingsError(f"{variable}_FILE: {path} cannot be read: {error}") from error
+        raise SettingsError(f"{variable}{_FILE}: {path} cannot be read: {error}") from error
 
 
 def _check(name: str, value: object) -> None:
     try:
-        msgspec.convert({name: value}, Settings, strict=False)
+        _converted({name: value})
     except msgspec.ValidationError as error:
-        raise SettingsError(f"{PREFIX}{name.upper()}: {value!r}: {error}") from error
+        quoted = "" if name in _SECRET else f"{value!r}: "
+        # The variable says where; the library's own words for that would say it once more.
+        raise SettingsError(f"{PREFIX}{name.upper()}: {quoted}{str(error).partition(' - at ')[0]}") from None
+
+
+def _converted(given: dict[str, Any]) -> Settings:
+    return msgspec.convert(given, Settings, strict=False, dec_hook=_read)
+
+
+def _read(type_: type, value: object) -> object:
+    """Read a value of a type of our own out of its text; what was made before is taken as it is."""
+    return value if isinstance(value, type_) else _READERS[type_](str(value))
