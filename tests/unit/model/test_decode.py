@@ -526,3 +526,83 @@ def test_what_the_contract_does_not_use_is_left_to_the_decoder() -> None:
 def test_the_budget_is_a_type_that_can_be_read() -> None:
     with pytest.raises(ContractError):
         decode(Budget, b"{}")
+
+
+LEGS = "/mission/legs"
+LATE = "/mission/branches/0/legs/0"
+ORRIN = {"name": "Orrin", "gravitational_parameter": 5e12, "radius": 1.8e6, "parent": "Tessaly"}
+
+
+def bent(*changes: tuple[str, Any]) -> dict[str, Any]:
+    design = TUG
+    for pointer, value in changes:
+        design = with_value(pointer, value, design)
+    return design
+
+
+@pytest.mark.parametrize(
+    "schema_fault, other_fault, pointer",
+    [
+        # a fault of the mission, and what the vehicle and the rules break by themselves
+        ((f"{LEGS}/0/splits", 0), ("/vehicle/payloads/0/on", "tog"), "/vehicle/payloads/0/on"),
+        ((f"{LEGS}/0/splits", 0), ("/vehicle/stages/0/name", "tug"), "/vehicle/stages/1/name"),
+        (("/mission/start/body", 7), ("/rules/contingency", [{"category": "a"}] * 2), "/rules/contingency/1/category"),
+        # a fault of the vehicle, and what each part of the mission breaks by itself
+        (("/vehicle/name", 7), ("/mission/start/body", None), "/mission/start/body"),
+        (("/vehicle/name", 7), ("/mission/epoch", "2031-02-30"), "/mission/epoch"),
+        (("/vehicle/name", 7), (f"{LEGS}/1/duration", None), f"{LEGS}/1/duration"),
+        (("/vehicle/name", 7), (f"{LEGS}/3/category", None), f"{LEGS}/3/category"),
+        (("/vehicle/name", 7), (f"{LATE}/engines", ["engine"]), f"{LATE}/engines"),
+        (("/vehicle/name", 7), ("/mission/system", {"bodies": [ORRIN]}), "/mission/system/bodies/0/orbit"),
+        # one leg's fault, and another leg's
+        ((f"{LEGS}/0/splits", 0), (f"{LEGS}/1/duration", None), f"{LEGS}/1/duration"),
+        # a fault of neither: names are looked for as if there were none
+        (("/rules/reserve", {"fraction": 2}), (f"{LEGS}/4/payload", "rely"), f"{LEGS}/4/payload"),
+        (("/surprise", 1), (f"{LEGS}/0/paid_by", ["kik"]), f"{LEGS}/0/paid_by/0"),
+    ],
+)
+def test_what_no_schema_states_is_told_beside_a_fault_of_the_schema(
+    schema_fault: tuple[str, Any], other_fault: tuple[str, Any], pointer: str
+) -> None:
+    told = pointers(refused(bent(schema_fault, other_fault)).violations)
+    assert told[0].startswith(schema_fault[0])
+    assert pointer in told[1:]
+
+
+@pytest.mark.parametrize(
+    "schema_fault",
+    [
+        ("/vehicle/stages/0/dry_mass", -1.0),
+        ("/vehicle/stages/0/name", 7),
+        ("/vehicle/stages", []),
+        ("/vehicle/payloads/0/mass", "1 m"),
+        (f"{LEGS}/0/to/apoapsis", "high"),
+        ("/mission/branches/0/of", ""),
+        ("/mission/epoch", 7),
+        ("/rules/residual_fraction", 3.0),
+    ],
+)
+def test_a_design_with_one_fault_is_told_of_it_alone(schema_fault: tuple[str, Any]) -> None:
+    # What cannot be read may be just what a leg or a payload speaks of.
+    assert pointers(refused(bent(schema_fault)).violations) == [schema_fault[0]]
+
+
+def test_a_vehicle_alone_is_told_what_no_schema_states_beside_a_fault_of_the_schema() -> None:
+    vehicle = bent(("/vehicle/payloads/0/on", "tog"))["vehicle"]
+    with pytest.raises(ContractError) as caught:
+        decode_builtins(PerformanceRequest, {"vehicle": vehicle, "gravity_of": 7})
+    assert pointers(caught.value.violations) == ["/gravity_of", "/vehicle/payloads/0/on"]
+
+
+def test_a_leg_alone_is_told_what_no_schema_states_beside_a_fault_of_the_schema() -> None:
+    orbit = {"kind": "orbit", "body": 7, "altitude": 4e5}
+    leg = {"kind": "transfer", "to": {"altitude": 5e5, "period": 6000.0}}
+    with pytest.raises(ContractError) as caught:
+        decode_builtins(TransferRequest, {"start": orbit, "leg": leg})
+    assert pointers(caught.value.violations) == ["/start/body", "/leg/to/period"]
+
+
+def test_nothing_is_added_where_the_reading_stopped() -> None:
+    many = [{"name": "strut", "mass": -1.0}] * 300
+    told = refused(bent(("/vehicle/stages/1/dry_mass", many), (f"{LEGS}/1/duration", None))).violations
+    assert (len(told), told[-1].pointer) == (201, "")

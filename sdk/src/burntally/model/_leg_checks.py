@@ -19,7 +19,7 @@ from burntally.model.mission import (
 )
 from burntally.model.vehicle import Load, Stage
 
-__all__ = ["Parts", "check_date", "check_leg", "check_size"]
+__all__ = ["ANY_PARTS", "Parts", "check_date", "check_leg", "check_size"]
 
 _LAST_YEAR: Final = 2200
 
@@ -31,6 +31,17 @@ class Parts(NamedTuple):
     payloads: Collection[str]  # of the vehicle, and whatever a leg takes on
     branches: Collection[str]
     has_epoch: bool
+
+
+class _AnyStages(dict[str, Stage]):
+    """Stages that cannot be read: whatever a leg names may be one of them."""
+
+    def __contains__(self, _name: object) -> bool:
+        return True
+
+
+ANY_PARTS: Final = Parts(stages=_AnyStages(), payloads=_AnyStages(), branches=_AnyStages(), has_epoch=True)
+"""What the legs may name where the rest of the request cannot be read: anything."""
 
 
 def check_leg(leg: Leg, trail: Trail, *, parts: Parts | None) -> None:
@@ -167,7 +178,7 @@ def _check_take_on(leg: TakeOn, trail: Trail, parts: Parts) -> None:
         tell(trail, "takes on nothing", expected="payload, propellants or branch")
     if leg.payload is not None:
         place: Trail = (trail, "payload")
-        check_on(leg.payload, place, stages=tuple(parts.stages))
+        check_on(leg.payload, place, stages=parts.stages)
         check_masses(leg.payload.mass, (place, "mass"))
     if leg.branch is not None:
         _check_known(leg.branch, (trail, "branch"), known=parts.branches, what="branch of the mission")

@@ -1,6 +1,6 @@
 """Rules for a vehicle that a schema cannot state."""
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 
 from burntally.model._trail import Trail, suggestion, tell
 from burntally.model.vehicle import Engine, Load, MassItem, Payload, Stage, Vehicle
@@ -57,10 +57,10 @@ def check_vehicle(vehicle: Vehicle, trail: Trail, *, residual_fraction: float) -
         check_masses(payload.mass, (place, "mass"))
 
 
-def check_on(payload: Payload, trail: Trail, *, stages: tuple[str, ...]) -> None:
+def check_on(payload: Payload, trail: Trail, *, stages: Collection[str]) -> None:
     """Tell where a payload rides on a stage that there is not."""
     if payload.on is not None and payload.on not in stages:
-        message = f"is no stage of the vehicle{suggestion(payload.on, stages)}"
+        message = f"is no stage of the vehicle{suggestion(payload.on, tuple(stages))}"
         tell((trail, "on"), message, read=payload.on, expected="the name of a stage")
 
 

@@ -14,7 +14,7 @@ from burntally.model.operations import PerformanceRequest, TransferRequest
 from burntally.model.rules import Rules
 from burntally.model.vehicle import Payload, Vehicle
 
-__all__ = ["violations"]
+__all__ = ["check_design", "check_rules", "check_vehicle_alone", "violations"]
 
 _TAKEN = "main"
 
@@ -35,15 +35,17 @@ def violations(value: object) -> list[Violation]:
     report = Report()
     with suppress(ReportFullError):
         if isinstance(value, Design):
-            _check_design(value, report)
+            check_design(value, report)
         elif isinstance(value, PerformanceRequest):
-            _check_performance(value, report)
+            check_vehicle_alone(value.vehicle, (report, "vehicle"), rules=value.rules)
+            check_rules(value.rules, (report, "rules"))
         elif isinstance(value, TransferRequest):
             _check_transfer(value, report)
     return report.violations
 
 
-def _check_design(design: Design, trail: Trail) -> None:
+def check_design(design: Design, trail: Trail) -> None:
+    """Check a design: its vehicle, its mission, and the names by which one speaks of the other."""
     vehicle: Trail = (trail, "vehicle")
     mission: Trail = (trail, "mission")
     taken = list(taken_on(design.mission, mission))
@@ -52,14 +54,21 @@ def _check_design(design: Design, trail: Trail) -> None:
     check_vehicle(design.vehicle, vehicle, residual_fraction=design.rules.residual_fraction or 0.0)
     _check_names(design.vehicle, vehicle, taken=taken)
     check_mission(design.mission, mission, stages=design.vehicle.stages, payloads=payloads)
-    _check_rules(design.rules, (trail, "rules"))
+    check_rules(design.rules, (trail, "rules"))
 
 
-def _check_performance(request: PerformanceRequest, trail: Trail) -> None:
-    vehicle: Trail = (trail, "vehicle")
-    check_vehicle(request.vehicle, vehicle, residual_fraction=request.rules.residual_fraction or 0.0)
-    _check_names(request.vehicle, vehicle, taken=[])
-    _check_rules(request.rules, (trail, "rules"))
+def check_vehicle_alone(vehicle: Vehicle, trail: Trail, *, rules: Rules) -> None:
+    """Check a vehicle that nothing else of the request speaks of."""
+    check_vehicle(vehicle, trail, residual_fraction=rules.residual_fraction or 0.0)
+    _check_names(vehicle, trail, taken=[])
+
+
+def check_rules(rules: Rules, trail: Trail) -> None:
+    """Check the rules, within themselves."""
+    categories = [rule.category for rule in rules.contingency]
+    check_unique(categories, (trail, "contingency"), within="rule", field="category")
+    rows = [(row.maturity, row.class_) for row in rules.growth_table]
+    check_unique(rows, (trail, "growth_table"), within="row of the table")
 
 
 def _check_transfer(request: TransferRequest, trail: Trail) -> None:
@@ -81,10 +90,3 @@ def _check_names(vehicle: Vehicle, trail: Trail, *, taken: Sequence[tuple[Trail,
             message = "is the name of another stage or payload, or of the first branch"
             tell((place, "name"), message, read=name, expected=f"a name of its own, and not {_TAKEN!r}")
         seen.add(name)
-
-
-def _check_rules(rules: Rules, trail: Trail) -> None:
-    categories = [rule.category for rule in rules.contingency]
-    check_unique(categories, (trail, "contingency"), within="rule", field="category")
-    rows = [(row.maturity, row.class_) for row in rules.growth_table]
-    check_unique(rows, (trail, "growth_table"), within="row of the table")

@@ -91,7 +91,9 @@ def decode_builtins(type_: type[T], parsed: object) -> T:
         raise _parse.too_deep()
     plain, found = walk(type_, parsed)
     if found:
-        raise ContractError(found)
+        from burntally.model._part_checks import violations_in_parts
+
+        raise ContractError([*found, *violations_in_parts(type_, plain, found)])
     try:
         value = msgspec.convert(plain, type_)
     except msgspec.ValidationError as error:
