@@ -55,6 +55,9 @@ class Settings(Struct, frozen=True, kw_only=True):
     ] = Networks()
 
 
+_NAMES: Final = [name.upper() for name in Settings.__struct_fields__]
+
+
 def settings_from(environment: Mapping[str, str] | None = None, **flags: object) -> Settings:
     """Read the settings: a flag beats the environment, which beats the default.
 
@@ -88,11 +91,11 @@ def settings_from(environment: Mapping[str, str] | None = None, **flags: object)
 
 
 def _check_names(variables: Mapping[str, str]) -> None:
-    known = [PREFIX + name.upper() for name in Settings.__struct_fields__]
     for variable in variables:
-        if variable.startswith(PREFIX) and variable.removesuffix(_FILE) not in known:
-            near = get_close_matches(variable.removesuffix(_FILE), known, n=1)
-            hint = f"; did you mean {near[0]}?" if near else ""
+        name = variable.removeprefix(PREFIX).removesuffix(_FILE)
+        if variable.startswith(PREFIX) and name not in _NAMES:
+            near = get_close_matches(name.upper(), _NAMES, n=1)
+            hint = f"; did you mean {PREFIX}{near[0]}?" if near else ""
             raise SettingsError(f"{variable}: there is no such setting{hint}")
 
 
