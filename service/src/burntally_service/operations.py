@@ -15,7 +15,7 @@ from msgspec.structs import replace
 from burntally.model.budget import Budget
 from burntally.model.decode import JSON, decode, encode
 from burntally.model.design import Design
-from burntally.model.errors import InconsistentError, Violation
+from burntally.model.errors import InconsistentError, UncomputableError, Violation
 from burntally.model.operations import (
     Bodies,
     BodyRecord,
@@ -96,25 +96,14 @@ def _create_budget_in_haste(design: Design) -> Budget:
 
 
 def _compute_performance(request: PerformanceRequest) -> Performance:
+    from burntally_service.budget.faults import surface_gravity
     from burntally_service.budget.rules import resolve
     from burntally_service.vehicle.performance import performance_of
 
     resolved = replace(request, rules=resolve(request.rules))
     if request.gravity_of is None:
         return performance_of(resolved)
-    return performance_of(resolved, gravity=_surface_gravity(request.gravity_of))
-
-
-def _surface_gravity(name: str) -> float:
-    """Gravity at the reference radius of a body of the solar catalogue [m/s2]."""
-    from burntally_service.bodies import catalogue
-
-    body = catalogue().get(name)
-    if body is None:
-        known = ", ".join(catalogue())
-        violation = Violation(pointer="/gravity_of", message="no body has this name", read=name, expected=known)
-        raise InconsistentError([violation])
-    return body.mu / (body.radius * body.radius)
+    return performance_of(resolved, gravity=surface_gravity(request.gravity_of))
 
 
 def _plan_transfer(request: TransferRequest) -> TransferAnswer:
@@ -275,5 +264,18 @@ def answer(
         In haste, where the answer takes its time.
     """
     operation = operation_named(operation_id)
-    request = None if operation.request is None else decode(operation.request, body, media_type=media_type)
-    return encode(operation.call(request, in_haste=in_haste), media_type=accept)
+    request: Struct | None = None
+    try:
+        request = None if operation.request is None else decode(operation.request, body, media_type=media_type)
+        told = operation.call(request, in_haste=in_haste)
+    except InconsistentError as error:
+        raise InconsistentError(_all_faults(error.request or request, error)) from error
+    except UncomputableError as error:
+        raise UncomputableError(_all_faults(request, error)) from error
+    return encode(told, media_type=accept)
+
+
+def _all_faults(request: object, error: InconsistentError | UncomputableError) -> list[Violation]:
+    from burntally_service.budget.faults import all_faults
+
+    return all_faults(request, error.violations)

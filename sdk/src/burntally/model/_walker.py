@@ -93,7 +93,7 @@ class _StructReader:
 
     def _read_stranger(self, value: object, trail: Trail) -> object:
         key = trail[1] if isinstance(trail, tuple) else None
-        if key == self._info.tag_field:
+        if isinstance(key, str) and key == self._info.tag_field:
             if value != self._info.tag:
                 tell(trail, "is another kind than is wanted", read=value, expected=repr(self._info.tag))
         elif self._info.forbid_unknown_fields:

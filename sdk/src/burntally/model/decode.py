@@ -173,7 +173,7 @@ def _wire_of(media_type: str) -> _Wire:
 def _consistent(value: T) -> T:
     found = violations(value)
     if found:
-        raise InconsistentError(found)
+        raise InconsistentError(found, request=value)
     return value
 
 

@@ -55,9 +55,20 @@ class InconsistentError(ContractError):
 
     An error of its own, so that whoever knows the published schema alone can count on it: what fits the schema is
     never answered with `invalid-request`.
+
+    Parameters
+    ----------
+    violations : sequence of Violation
+        What is wrong.
+    request : object, optional
+        The request as it was read, for whoever knows more about it that may be wrong.
     """
 
     code: ClassVar[str] = "inconsistent-request"
+
+    def __init__(self, violations: Sequence[Violation], *, request: object = None) -> None:
+        super().__init__(violations)
+        self.request = request
 
 
 class NotFoundError(_ViolationsError):

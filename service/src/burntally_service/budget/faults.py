@@ -1,0 +1,72 @@
+"""Faults of a request that only a catalogue can tell: names of presets and bodies, systems of bodies, starts.
+
+A computation stops at the first of them. Here each is looked for by itself, once it is known that there is one, so that
+a request is told all that keeps it from being computed.
+"""
+
+from collections.abc import Callable, Iterator
+from functools import partial
+
+from burntally.model.design import Design
+from burntally.model.errors import InconsistentError, UncomputableError, Violation
+from burntally.model.mission import Location, System
+from burntally.model.operations import PerformanceRequest, TransferRequest
+from burntally_service.bodies import catalogue, system_of
+from burntally_service.budget.rules import resolve
+from burntally_service.legs import check_start
+
+__all__ = ["all_faults", "surface_gravity"]
+
+
+def all_faults(request: object, known: tuple[Violation, ...]) -> list[Violation]:
+    """Add to the faults that are known of a request those that its names have.
+
+    Parameters
+    ----------
+    request
+        A request that fits its schema; of what is none of ours nothing more is told.
+    known
+        What is known to be wrong with it.
+
+    Returns
+    -------
+    list of Violation
+        Those that are known first; of a field that they name already, nothing more.
+    """
+    pointers = {violation.pointer for violation in known}
+    return [*known, *(violation for violation in _looked_up(request) if violation.pointer not in pointers)]
+
+
+def surface_gravity(name: str) -> float:
+    """Gravity at the reference radius of a body of the solar catalogue [m/s2]; it refuses a name that is not there."""
+    body = catalogue().get(name)
+    if body is None:
+        known = ", ".join(catalogue())
+        violation = Violation(pointer="/gravity_of", message="no body has this name", read=name, expected=known)
+        raise InconsistentError([violation])
+    return body.mu / (body.radius * body.radius)
+
+
+def _looked_up(request: object) -> Iterator[Violation]:
+    for look_up in _look_ups(request):
+        try:
+            look_up()
+        except (InconsistentError, UncomputableError) as error:
+            yield from error.violations
+
+
+def _look_ups(request: object) -> Iterator[Callable[[], object]]:
+    if isinstance(request, Design):
+        yield partial(resolve, request.rules)
+        yield partial(_start, request.mission.system, request.mission.start, "/mission")
+    elif isinstance(request, PerformanceRequest):
+        yield partial(resolve, request.rules)
+        if request.gravity_of is not None:
+            yield partial(surface_gravity, request.gravity_of)
+    elif isinstance(request, TransferRequest):
+        yield partial(_start, request.system, request.start, "")
+
+
+def _start(system: System | None, start: Location, pointer: str) -> None:
+    bodies = system_of(system, pointer=f"{pointer}/system")
+    check_start(start, bodies, pointer=f"{pointer}/start")
