@@ -6,7 +6,7 @@ import pytest
 from msgspec import Struct
 
 from burntally.model.scalars import Isp, Mass, doc
-from burntally_service.api.schemas import component_schemas
+from burntally_service.api.schemas import component_schemas, ref_to
 
 
 class Here(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True, tag_field="kind", tag="here"):
@@ -34,6 +34,17 @@ class Told(Struct, frozen=True, kw_only=True):
     place: Annotated[Here | There | None, doc("Place.")] = None
     counts: Annotated[dict[str, int], doc("Counts.")]
     value: Annotated[float | int | str | None, doc("Value.")] = None
+
+
+class Places(Struct, frozen=True, kw_only=True):
+    """An answer with a field of its own name."""
+
+    places: Annotated[list[Here | There], doc("Places.")]
+
+
+@pytest.fixture(scope="module")
+def named() -> dict[str, Any]:
+    return component_schemas([Asked], [Told, Places], {"Place": Here | There})
 
 
 @pytest.fixture(scope="module")
@@ -111,3 +122,23 @@ def test_an_integer_beside_a_number_is_not_told_twice(schemas: dict[str, Any]) -
 
 def test_marks_of_one_dialect_are_set_in_the_other(schemas: dict[str, Any]) -> None:
     assert schemas["There"]["properties"]["isp"]["description"] == "Impulse; `null` is not read."
+
+
+@pytest.mark.parametrize("holder,twin", [("Asked", "Place"), ("Told", "PlaceAnswer")])
+def test_a_union_that_has_a_name_is_a_component(holder: str, twin: str, named: dict[str, Any]) -> None:
+    place = named[holder]["properties"]["place"]
+    assert place == {"description": "Place.", "$ref": f"#/components/schemas/{twin}"}
+    assert (named[twin]["title"], len(named[twin]["oneOf"])) == (twin, 2)
+
+
+def test_a_named_union_stands_in_lists_too(named: dict[str, Any]) -> None:
+    assert named["PlacesAnswer"]["properties"]["places"]["items"] == {"$ref": "#/components/schemas/PlaceAnswer"}
+
+
+def test_an_answer_with_a_field_of_its_own_name_bears_another(named: dict[str, Any]) -> None:
+    assert ("Places" in named, named["PlacesAnswer"]["title"]) == (False, "PlacesAnswer")
+    assert ref_to(Places) == {"$ref": "#/components/schemas/PlacesAnswer"}
+
+
+def test_what_may_be_null_is_not_told_as_null_where_it_is_left_out(schemas: dict[str, Any]) -> None:
+    assert "default" not in schemas["Here"]["properties"]["mass"]

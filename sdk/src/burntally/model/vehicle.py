@@ -50,7 +50,7 @@ class Load(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True, omit_d
     boiloff_per_day: Annotated[Mass, doc("Boil-off in a day, while any usable propellant is left.")] = 0.0
 
 
-_Feeds = Annotated[dict[Name, Parts], Meta(min_length=1, max_length=8)]
+_Feeds = Annotated[dict[Name, Parts], Meta(title="Feeds", min_length=1, max_length=8)]
 _Ignitions = Annotated[int, Meta(ge=1, le=10000)]
 
 

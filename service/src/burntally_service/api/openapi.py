@@ -13,11 +13,12 @@ from typing import Any, Final
 import msgspec
 
 from burntally.model.decode import JSON, MSGPACK
+from burntally.model.mission import Leg, Location
 from burntally.model.operations import Problem
 from burntally_service.api.examples import answer_of, requests_of
 from burntally_service.api.exchange import VERSION
 from burntally_service.api.problems import PROBLEM_JSON, PROBLEMS, ProblemType
-from burntally_service.api.schemas import component_schemas
+from burntally_service.api.schemas import component_schemas, ref_to
 from burntally_service.operations import OPERATIONS, Operation
 
 __all__ = ["document", "encoded_document"]
@@ -98,6 +99,7 @@ def document() -> Node:
             "schemas": component_schemas(
                 [row.request for row in operations if row.takes_body and row.request],
                 [*(row.response for row in operations), Problem],
+                {"Leg": Leg, "Location": Location},
             ),
             "headers": _headers() | _PROBLEM_HEADERS,
             "securitySchemes": {"bearer": _BEARER},
@@ -115,6 +117,7 @@ def _info() -> Node:
         "summary": "Delta-v and propellant budgets of multi-stage vehicles.",
         "description": _DESCRIPTION.read_text(encoding="utf-8"),
         "version": VERSION,
+        "contact": {"name": "The maintainers of Burntally"},
         "license": {"name": "Apache-2.0", "identifier": "Apache-2.0"},
     }
 
@@ -159,7 +162,7 @@ def _parameters(operation: Operation) -> list[Node]:
 
 
 def _content(type_: type | None, examples: Node | None = None) -> Node:
-    schema = {"$ref": f"#/components/schemas/{type_.__name__}"} if type_ else {}
+    schema = ref_to(type_) if type_ else {}
     return {JSON: {"schema": schema} | ({"examples": examples} if examples else {}), MSGPACK: {"schema": schema}}
 
 

@@ -2,18 +2,19 @@
 
 The types know each noun once. On the wire a request may write a quantity with its unit, and knows no field beyond its
 own; an answer holds plain numbers, and may learn new fields. So a noun that stands in both has two schemas: the request
-keeps the name, the answer's is called ``<Name>Answer``.
+keeps the name, the answer's is called ``<Name>Answer``. So is an answer with a field of its own name, since generated
+clients take one for the other.
 """
 
-from collections.abc import Callable, Iterable
-from typing import Any, Final
+from collections.abc import Callable, Iterable, Mapping
+from typing import Any, Final, get_args
 
 from msgspec.json import schema_components
 
 from burntally.model.quantity import dimension_of, units_of, wire_pattern
 from burntally.model.scalars import OR_UNIT_KEY, UNIT_KEY
 
-__all__ = ["ANSWER_SUFFIX", "component_schemas"]
+__all__ = ["ANSWER_SUFFIX", "component_schemas", "ref_to"]
 
 Schema = dict[str, Any]
 
@@ -30,6 +31,7 @@ _ANSWER_BOUNDS: Final[dict[str, Schema]] = {
 }
 _BOUNDED_OTHERWISE: Final = frozenset({"const", "enum", "properties", "exclusiveMinimum", "exclusiveMaximum"})
 _HOLDING_ONE: Final = frozenset({"items", "additionalProperties", "propertyNames"})
+_UNIONS: Final = frozenset({"anyOf", "oneOf"})
 _EXACT_INTEGERS: Final = 2.0**53
 _TYPE_NAMES: Final = {str: "string", int: "integer", bool: "boolean"}
 _TEXT_NAMES: Final = {
@@ -49,7 +51,9 @@ _TEXT_NAMES: Final = {
 }
 
 
-def component_schemas(asked: Iterable[type], told: Iterable[type]) -> dict[str, Schema]:
+def component_schemas(
+    asked: Iterable[type], told: Iterable[type], unions: Mapping[str, object] | None = None
+) -> dict[str, Schema]:
     """Make the schemas of all types that requests and answers are built from.
 
     Parameters
@@ -58,6 +62,8 @@ def component_schemas(asked: Iterable[type], told: Iterable[type]) -> dict[str, 
         Types of requests.
     told
         Types of answers.
+    unions
+        Tagged unions that have a name, so that generated clients can speak of them.
 
     Returns
     -------
@@ -65,12 +71,46 @@ def component_schemas(asked: Iterable[type], told: Iterable[type]) -> dict[str, 
         JSON Schemas (2020-12) by their name below ``#/components/schemas``, in alphabetical order.
     """
     requests, answers = _components(asked), _components(told)
-    renamed = {name: name + ANSWER_SUFFIX for name in requests.keys() & answers.keys()}
+    shared = requests.keys() & answers.keys()
+    renamed = {name: name + ANSWER_SUFFIX for name in answers if name in shared or _is_field_of(name, answers[name])}
     texts: dict[str, Schema] = {}
     schemas = {name: _walk(schema, lambda node: _asked_node(node, texts)) for name, schema in requests.items()}
     for name, schema in answers.items():
         schemas[renamed.get(name, name)] = _walk(schema, lambda node: _told_node(node, renamed))
-    return dict(sorted((schemas | texts).items()))
+    return dict(sorted((_with_named_unions(schemas, unions or {}) | texts).items()))
+
+
+def ref_to(type_: type) -> Schema:
+    """Refer to the schema of an answer's type."""
+    _, components = schema_components([type_], ref_template=_REF + "{name}")
+    name = type_.__name__
+    return {"$ref": _REF + (name + ANSWER_SUFFIX if _is_field_of(name, components[name]) else name)}
+
+
+def _is_field_of(name: str, schema: Schema) -> bool:
+    return name.lower() in schema.get("properties", {})
+
+
+def _with_named_unions(schemas: dict[str, Schema], unions: Mapping[str, object]) -> dict[str, Schema]:
+    """Make components of the unions that have a name, and refer to them."""
+    named = {}
+    for name, union in unions.items():
+        members = [member.__name__ for member in get_args(union)]
+        for suffix in ("", ANSWER_SUFFIX):
+            named[frozenset(_REF + member + suffix for member in members)] = name + suffix
+    components: dict[str, Schema] = {}
+
+    def refer(node: Schema) -> Schema:
+        name = named.get(frozenset(option.get("$ref", "") for option in node.get("oneOf", ())))
+        if name is None:
+            return node
+        union = {key: node.pop(key) for key in ("discriminator", "oneOf")}
+        kinds = ", ".join(f"`{kind}`" for kind in union["discriminator"]["mapping"])
+        components[name] = {"title": name, "description": f"Told by its kind: {kinds}."} | union
+        return node | {"$ref": _REF + name}
+
+    referring = {name: _walk(schema, refer) for name, schema in schemas.items()}
+    return referring | components
 
 
 def _components(types: Iterable[type]) -> dict[str, Schema]:
@@ -84,7 +124,7 @@ def _walk(schema: Schema, change: Callable[[Schema], Schema]) -> Schema:
     for key, value in schema.items():
         if key == "properties":
             rebuilt[key] = {name: _walk(inner, change) for name, inner in value.items()}
-        elif key == "anyOf":
+        elif key in _UNIONS:
             rebuilt[key] = [_walk(inner, change) for inner in value]
         elif key in _HOLDING_ONE and value is not False:
             rebuilt[key] = _walk(value, change)
@@ -100,6 +140,9 @@ def _tidy(value: object) -> object:
 
 def _asked_node(node: Schema, texts: dict[str, Schema]) -> Schema:
     node = _common_node(node)
+    # That null stands for what is left out is told by its being allowed; told as a default, generators ask for it.
+    if node.get("default", ...) is None:
+        del node["default"]
     if node.get("type") == "number" and UNIT_KEY in node:
         return _quantity(node, texts)
     if "anyOf" in node:
