@@ -6,6 +6,7 @@ no numbers library: a row's function imports its room when it is first called.
 """
 
 from collections.abc import Callable
+from datetime import date
 from types import MappingProxyType
 from typing import Annotated, Any, Final, Literal
 
@@ -28,13 +29,31 @@ from burntally.model.operations import (
 )
 from burntally.model.scalars import Name, doc
 
-__all__ = ["OPERATIONS", "Named", "Operation", "answer", "operation_named"]
+__all__ = ["OPERATIONS", "Named", "Operation", "Retirement", "answer", "operation_named"]
 
 
 class Named(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """A request for the one thing that bears a name."""
 
     name: Annotated[Name, doc("Name of what is asked for.")]
+
+
+class Retirement(Struct, frozen=True, kw_only=True):
+    """How an operation goes: announced first, and gone no earlier than was said.
+
+    Attributes
+    ----------
+    deprecated
+        Day from which it is no longer recommended.
+    sunset
+        Day from which it may be gone; None: not set yet.
+    successor
+        Path of what to ask in its place, if there is something.
+    """
+
+    deprecated: date
+    sunset: date | None = None
+    successor: str | None = None
 
 
 class Operation(Struct, frozen=True, kw_only=True):
@@ -59,6 +78,8 @@ class Operation(Struct, frozen=True, kw_only=True):
     hasty
         The function for use where the request arrived, if that is another: it raises `NeedsTimeError` where only the
         function itself will do.
+    retirement
+        How it goes, if it is to go.
     """
 
     id: str
@@ -71,6 +92,7 @@ class Operation(Struct, frozen=True, kw_only=True):
     function: Callable[..., Struct]
     cost: Literal["inline", "thread"] = "inline"
     hasty: Callable[..., Struct] | None = None
+    retirement: Retirement | None = None
 
     @property
     def takes_body(self) -> bool:

@@ -2,7 +2,8 @@
 
 import asyncio
 import hashlib
-from collections.abc import Iterable
+import re
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from importlib.metadata import version
 from typing import Any, Final
@@ -25,6 +26,8 @@ AnyRequest = Request[Any, Any, Any]
 VERSION: Final = version("burntally-service")
 _NOT_MODIFIED: Final = 304
 _TAG_BYTES: Final = 16
+_ANY_TAG: Final = "*"
+_TAG: Final = re.compile(r'"[^"]*"')
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -45,7 +48,7 @@ def open_exchange(request: AnyRequest, operation: Operation) -> Exchange:
     if accept is None:
         raise ProblemError("not-acceptable", "Accept allows none of application/json and application/msgpack")
     media_type = _body_media_type(headers) if operation.takes_body else JSON
-    return Exchange(media_type=media_type, accept=accept, known_tags=headers.get(b"if-none-match", ""))
+    return Exchange(media_type=media_type, accept=accept, known_tags=headers.get(b"if-none-match", "").strip())
 
 
 async def read_body(request: AnyRequest, timeout_s: float) -> bytes:
@@ -63,11 +66,14 @@ async def read_body(request: AnyRequest, timeout_s: float) -> bytes:
         raise ProblemError("invalid-request", "the body ended before it was complete") from None
 
 
-def reply(operation: Operation, exchange: Exchange, *, asked: bytes, told: bytes) -> ASGIResponse:
+def reply(
+    operation: Operation, exchange: Exchange, *, asked: bytes, told: bytes, standing: Mapping[str, str]
+) -> ASGIResponse:
     """Answer, or tell that the caller has this answer already (RFC 9110, section 13.1.2)."""
     tag = entity_tag((operation.id, exchange.accept), asked, told)
-    headers = {"ETag": tag, "Cache-Control": _cache_control(operation), "Vary": "Accept"}
-    if is_known(tag, exchange.known_tags):
+    headers = {**standing, "ETag": tag, "Cache-Control": _cache_control(operation), "Vary": "Accept"}
+    # Before it was asked for, an answer to a POST is nowhere to be found, so no `*` stands for it.
+    if is_known(tag, exchange.known_tags) and not (operation.takes_body and exchange.known_tags == _ANY_TAG):
         if operation.takes_body:
             raise ProblemError("precondition-failed", "the answer has not changed", headers=headers)
         return ASGIResponse(status_code=_NOT_MODIFIED, headers=headers)
@@ -86,7 +92,7 @@ def entity_tag(names: Iterable[str], *parts: bytes) -> str:
 
 def is_known(tag: str, known_tags: str) -> bool:
     """Tell whether `If-None-Match` holds the tag; the weak comparison of RFC 9110, section 8.8.3.2."""
-    return bool(known_tags) and tag in {known.strip().removeprefix("W/") for known in known_tags.split(",")}
+    return bool(known_tags) and (known_tags.strip() == _ANY_TAG or tag in _TAG.findall(known_tags))
 
 
 def _headers(request: AnyRequest) -> dict[bytes, str]:

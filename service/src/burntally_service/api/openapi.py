@@ -101,7 +101,7 @@ def document() -> Node:
                 [*(row.response for row in operations), Problem],
                 {"Leg": Leg, "Location": Location},
             ),
-            "headers": _headers() | _PROBLEM_HEADERS,
+            "headers": _headers(operations) | _PROBLEM_HEADERS,
             "securitySchemes": {"bearer": _BEARER},
             "responses": {
                 _response_name(kinds): _problem(kinds)
@@ -129,6 +129,8 @@ def _operation(operation: Operation) -> Node:
         "description": operation.description,
         "tags": [operation.path.split("/")[2]],
     }
+    if operation.retirement is not None:
+        node["deprecated"] = True
     if "{" in operation.path:
         node["parameters"] = _parameters(operation)
     if operation.takes_body:
@@ -169,7 +171,7 @@ def _content(type_: type | None, examples: Node | None = None) -> Node:
 def _success(operation: Operation) -> Node:
     node: Node = {
         "description": "The answer.",
-        "headers": {name: {"$ref": f"#/components/headers/{name}"} for name in _headers()},
+        "headers": {name: {"$ref": f"#/components/headers/{name}"} for name in _headers([operation])},
         "content": _content(operation.response, answer_of(operation.id)),
     }
     if operation.id in _LISTED_BY:
@@ -238,8 +240,9 @@ def _problem(kinds: tuple[ProblemType, ...]) -> Node:
     }
 
 
-def _headers() -> Node:
-    return {
+def _headers(operations: Iterable[Operation]) -> Node:
+    """Headers of the answers of these operations."""
+    headers: Node = {
         "X-Request-Id": {
             "description": "Id of the request.",
             "required": True,
@@ -250,7 +253,22 @@ def _headers() -> Node:
             "required": True,
             "schema": {"type": "string", "maxLength": 64, "pattern": '^"[0-9a-f]+"$'},
         },
+        "Link": {
+            "description": "Where the service is described (RFC 8631): this document, and the page made of it.",
+            "required": True,
+            "schema": {"type": "string", "maxLength": 1000},
+        },
     }
+    if any(operation.retirement is not None for operation in operations):
+        headers["Deprecation"] = {
+            "description": "Since when the operation is no longer recommended (RFC 9745).",
+            "schema": {"type": "string", "maxLength": 20, "pattern": "^@[0-9]+$"},
+        }
+        headers["Sunset"] = {
+            "description": "From when it may be gone (RFC 8594).",
+            "schema": {"type": "string", "maxLength": 29},
+        }
+    return headers
 
 
 if __name__ == "__main__":

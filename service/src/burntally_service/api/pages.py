@@ -20,6 +20,7 @@ from burntally_service.api.exchange import AnyRequest, entity_tag, is_known
 from burntally_service.api.media import chosen_media_type
 from burntally_service.api.metrics import EXPOSITION, Metrics
 from burntally_service.api.problems import PROBLEMS, ProblemError, ProblemType
+from burntally_service.api.standing import SERVICE_LINKS
 
 __all__ = ["page_routes"]
 
@@ -28,7 +29,6 @@ _HTML_HEADERS: Final = {
     "Content-Security-Policy": "default-src 'self'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'",
     "Referrer-Policy": "no-referrer",
 }
-_SERVICE_LINKS: Final = '</openapi.json>; rel="service-desc", </docs>; rel="service-doc"'
 _RETRY_AFTER_S: Final = 1
 
 
@@ -100,7 +100,7 @@ def _page_route(page: _Page) -> HTTPRouteHandler:
 
 
 def _index(request: AnyRequest) -> ASGIApp:  # noqa: ARG001 - every handler has this one shape
-    return ASGIResponse(status_code=307, headers={"Location": "/docs", "Link": _SERVICE_LINKS})
+    return ASGIResponse(status_code=307, headers={"Location": "/docs", "Link": SERVICE_LINKS})
 
 
 def _health(request: AnyRequest) -> ASGIApp:  # noqa: ARG001 - as above

@@ -159,6 +159,10 @@ _CODE_OF_STATUS: Final = {
     408: "request-timeout",
     413: "payload-too-large",
 }
+_DETAILS: Final = {
+    NotFoundError.code: "nothing is at this path; /openapi.json lists every path that there is",
+    "method-not-allowed": "this path takes other methods; Allow lists them",
+}
 # The rest of a body that was refused half read would be taken for the next request.
 _CLOSES_CONNECTION: Final = frozenset({408, 413})
 
@@ -219,12 +223,13 @@ def _read(error: Exception) -> tuple[str, str | None, Sequence[Violation], dict[
     if isinstance(error, ProblemError):
         return error.code, error.detail, error.violations, error.headers
     if isinstance(error, ContractError | UncomputableError | NotFoundError):
-        return error.code, _count(error.violations), error.violations, {}
+        return error.code, _count(error.violations) or _DETAILS.get(error.code), error.violations, {}
     if isinstance(error, RecursionError):
         return ContractError.code, "the body is nested too deeply", (), {}
     if isinstance(error, HTTPException) and error.status_code in _CODE_OF_STATUS:
         # The framework's own words may quote what was sent, so they stay inside.
-        return _CODE_OF_STATUS[error.status_code], None, (), _kept_headers(error)
+        code = _CODE_OF_STATUS[error.status_code]
+        return code, _DETAILS.get(code), (), _kept_headers(error)
     return "internal-error", None, (), {}
 
 

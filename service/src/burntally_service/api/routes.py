@@ -13,6 +13,7 @@ from litestar.types import ASGIApp
 from burntally_service import operations
 from burntally_service.api.exchange import AnyRequest, open_exchange, read_body, reply
 from burntally_service.api.settings import Settings
+from burntally_service.api.standing import standing_headers
 from burntally_service.haste import NeedsTimeError
 from burntally_service.operations import Operation
 
@@ -28,11 +29,13 @@ def operation_routes(rows: Iterable[Operation], settings: Settings) -> list[HTTP
 
 
 def _route(operation: Operation, settings: Settings) -> HTTPRouteHandler:
+    standing = standing_headers(operation)
+
     async def handle(request: AnyRequest) -> ASGIApp:
         exchange = open_exchange(request, operation)
         asked = await _asked(request, operation, settings)
         told = await _told(operation, asked, (exchange.media_type, exchange.accept))
-        return reply(operation, exchange, asked=asked, told=told)
+        return reply(operation, exchange, asked=asked, told=told, standing=standing)
 
     methods = [HttpMethod.POST] if operation.takes_body else [HttpMethod.GET, HttpMethod.HEAD]
     route = HTTPRouteHandler(
