@@ -166,7 +166,7 @@ def failing(monkeypatch: pytest.MonkeyPatch) -> Iterator[None]:
     """A service with a fault of its own."""
 
     def fail() -> Any:
-        raise ZeroDivisionError("secret of the house")
+        raise AttributeError("secret of the house")
 
     rows = dict(OPERATIONS) | {"list_bodies": msgspec.structs.replace(OPERATIONS["list_bodies"], function=fail)}
     monkeypatch.setattr(operations, "OPERATIONS", rows)

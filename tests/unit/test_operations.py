@@ -6,8 +6,9 @@ import sys
 import msgspec
 import pytest
 
-from burntally.model.errors import ContractError, InconsistentError, NotFoundError
+from burntally.model.errors import ContractError, InconsistentError, NotFoundError, UncomputableError
 from burntally.model.operations import BodyRecord
+from burntally_service import operations
 from burntally_service.operations import OPERATIONS, answer, operation_named
 
 VEHICLE = {
@@ -90,3 +91,31 @@ def test_the_table_loads_nothing_heavy() -> None:
     code = f"import sys, burntally_service.operations; print(sorted({heavy} & set(sys.modules)))"
     told = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert told.stdout.strip() == "[]"
+
+
+def failing_with(error: Exception, monkeypatch: pytest.MonkeyPatch) -> None:
+    def fail() -> object:
+        raise error
+
+    row = msgspec.structs.replace(OPERATIONS["list_bodies"], function=fail)
+    monkeypatch.setattr(operations, "OPERATIONS", {row.id: row})
+
+
+@pytest.mark.parametrize(
+    "error", [ZeroDivisionError("division by zero"), OverflowError("too large"), ValueError("math domain error")]
+)
+def test_what_arithmetic_cannot_do_has_no_answer_and_is_logged(
+    error: Exception, monkeypatch: pytest.MonkeyPatch, caplog: pytest.LogCaptureFixture
+) -> None:
+    failing_with(error, monkeypatch)
+    with pytest.raises(UncomputableError):
+        answer("list_bodies", b"")
+    assert [(record.name, record.exc_info and record.exc_info[1]) for record in caplog.records] == [
+        ("burntally.operations", error)
+    ]
+
+
+def test_any_other_failure_stays_what_it_is(monkeypatch: pytest.MonkeyPatch) -> None:
+    failing_with(ValueError("no such thing"), monkeypatch)
+    with pytest.raises(ValueError, match="no such thing"):
+        answer("list_bodies", b"")

@@ -5,6 +5,7 @@ client has a table of its own, since it must not import the service. Nothing her
 no numbers library: a row's function imports its room when it is first called.
 """
 
+import logging
 from collections.abc import Callable
 from datetime import date
 from types import MappingProxyType
@@ -30,6 +31,9 @@ from burntally.model.operations import (
 from burntally.model.scalars import Name, doc
 
 __all__ = ["OPERATIONS", "Named", "Operation", "Retirement", "answer", "operation_named"]
+
+_LOG: Final = logging.getLogger("burntally.operations")
+_OUT_OF_DOMAIN: Final = "math domain error"
 
 
 class Named(Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
@@ -107,13 +111,17 @@ class Operation(Struct, frozen=True, kw_only=True):
 
 def _create_budget(design: Design) -> Budget:
     from burntally_service.budget import draw_up
+    from burntally_service.budget.work import check_work
 
+    check_work(design)
     return draw_up(design)
 
 
 def _create_budget_in_haste(design: Design) -> Budget:
     from burntally_service.budget import draw_up
+    from burntally_service.budget.work import check_work
 
+    check_work(design, in_haste=True)
     return draw_up(design, in_haste=True)
 
 
@@ -289,7 +297,7 @@ def answer(
     request: Struct | None = None
     try:
         request = None if operation.request is None else decode(operation.request, body, media_type=media_type)
-        told = operation.call(request, in_haste=in_haste)
+        told = _computed(operation, request, in_haste=in_haste)
     except InconsistentError as error:
         raise InconsistentError(_all_faults(error.request or request, error)) from error
     except UncomputableError as error:
@@ -301,3 +309,22 @@ def _all_faults(request: object, error: InconsistentError | UncomputableError) -
     from burntally_service.budget.faults import all_faults
 
     return all_faults(request, error.violations)
+
+
+def _computed(operation: Operation, request: Struct | None, *, in_haste: bool) -> Struct:
+    """Run the operation; what is beyond arithmetic, as the speed of a stage that weighs nothing, has no answer."""
+    try:
+        return operation.call(request, in_haste=in_haste)
+    except ArithmeticError as error:
+        raise _without_end(error) from error
+    except ValueError as error:
+        if str(error) != _OUT_OF_DOMAIN:
+            raise
+        raise _without_end(error) from error
+
+
+def _without_end(error: Exception) -> UncomputableError:
+    # It is logged all the same: of a sane request it would be a fault of ours.
+    _LOG.warning("arithmetic failed", exc_info=error)
+    message = "somewhere on the way a quantity vanishes or grows beyond all bounds, so there is no finite answer"
+    return UncomputableError([Violation(pointer="", message=message)])
