@@ -53,6 +53,6 @@ def identity_of(scope: HTTPScope) -> Identity:
 
 def _join(identity: Identity, parents: list[bytes]) -> None:
     """Make the request part of the caller's trace."""
-    found = _PARENT.match(parents[0].strip()) if len(parents) == 1 else None
+    found = _PARENT.match(parents[0]) if len(parents) == 1 else None
     if found and not (found[3] and found[0].startswith(b"00")):
         identity.trace_id, identity.parent_id = found[1].decode("ascii"), found[2].decode("ascii")
