@@ -22,7 +22,11 @@
             ├── UnsupportedMedia    415
             ├── Uncomputable        422: fits the contract and cannot be computed
             ├── RateLimited         429
-            ├── Unavailable         503: starting, stopping, or busy
+            ├── HeaderTooLarge      431
+            ├── Unavailable         503: starting or stopping
+            │   ├── Overloaded        503: enough to do
+            │   ├── TookTooLong       503: the computation was stopped
+            │   └── WorkerLost        503: the process that computed ended
             └── ServerFault         any other 5xx, and a fault of an installed service
 
 A design that does not close is a result, never an error.
@@ -41,11 +45,13 @@ __all__ = [
     "ConnectionFailed",
     "ContractError",
     "DecodingError",
+    "HeaderTooLarge",
     "InconsistentRequest",
     "InvalidRequest",
     "MethodNotAllowed",
     "NotAcceptable",
     "NotFound",
+    "Overloaded",
     "PreconditionFailed",
     "RateLimited",
     "ServerFault",
@@ -53,12 +59,14 @@ __all__ = [
     "StatusError",
     "TimedOut",
     "TooLarge",
+    "TookTooLong",
     "Unauthorized",
     "Unavailable",
     "Uncomputable",
     "UncomputableError",
     "UnsupportedMedia",
     "Violation",
+    "WorkerLost",
     "refusal_of",
     "status_error",
 ]
@@ -222,6 +230,30 @@ class Unavailable(StatusError):
     code: ClassVar[str] = "not-ready"
 
 
+class Overloaded(Unavailable):
+    """The service has as much to do as it takes at once."""
+
+    code: ClassVar[str] = "overloaded"
+
+
+class TookTooLong(Unavailable):
+    """The service gave up on the computation."""
+
+    code: ClassVar[str] = "took-too-long"
+
+
+class WorkerLost(Unavailable):
+    """The process that computed the answer ended."""
+
+    code: ClassVar[str] = "worker-lost"
+
+
+class HeaderTooLarge(StatusError):
+    """The head of the request passes the service's bound."""
+
+    code: ClassVar[str] = "header-too-large"
+
+
 class ServerFault(StatusError):
     """A fault of the service, not of the request."""
 
@@ -244,6 +276,10 @@ _BY_CODE: Final[dict[str, type[StatusError]]] = {
         Uncomputable,
         RateLimited,
         Unavailable,
+        Overloaded,
+        TookTooLong,
+        WorkerLost,
+        HeaderTooLarge,
         ServerFault,
     )
 }
@@ -259,6 +295,7 @@ _BY_STATUS: Final[dict[int, type[StatusError]]] = {
     415: UnsupportedMedia,
     422: Uncomputable,
     429: RateLimited,
+    431: HeaderTooLarge,
     503: Unavailable,
 }
 _FIRST_SERVER_STATUS: Final = 500

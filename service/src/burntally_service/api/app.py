@@ -16,6 +16,7 @@ from burntally_service.api.pages import page_routes
 from burntally_service.api.problems import problem_response
 from burntally_service.api.routes import operation_routes
 from burntally_service.api.settings import Settings, settings_from
+from burntally_service.api.turns import Turns
 
 __all__ = ["create_app"]
 
@@ -35,9 +36,10 @@ def create_app(settings: Settings | None = None) -> Edge:
     """
     settings = settings_from() if settings is None else settings
     metrics = Metrics()
+    turns = Turns(settings)
     application = Litestar(
         route_handlers=[
-            *operation_routes(operations.OPERATIONS.values(), settings),
+            *operation_routes(operations.OPERATIONS.values(), settings, turns),
             *page_routes(metrics if settings.metrics else None),
         ],
         exception_handlers={HTTPException: problem_response, Exception: problem_response},
@@ -45,7 +47,7 @@ def create_app(settings: Settings | None = None) -> Edge:
         logging_config=None,
         openapi_config=None,
         request_max_body_size=settings.max_body_bytes,
-        state=State({"ready": False}),
+        state=State({"ready": False, "turns": turns}),
     )
     return Edge(application, settings=settings, metrics=metrics)
 
@@ -59,3 +61,4 @@ async def _ready(application: Litestar) -> AsyncGenerator[None, None]:
         yield
     finally:
         application.state.ready = False
+        await application.state.turns.close()

@@ -15,7 +15,7 @@ from burntally.model.errors import NotFoundError
 from burntally_service.api.callers import caller_of, scheme_of
 from burntally_service.api.guard import Guard
 from burntally_service.api.metrics import Metrics
-from burntally_service.api.problems import PROBLEM_JSON, Refusal, refusal_of
+from burntally_service.api.problems import PROBLEM_JSON, PROBLEMS, Refusal, refusal_of
 from burntally_service.api.settings import Settings
 from burntally_service.api.traces import Identity, identity_of
 
@@ -75,6 +75,11 @@ class Edge:
             await self._answer(scope, receive, reply, visit=visit)
         finally:
             self._record(scope, visit, reply)
+
+    def count_refusal(self, method: str, problem: str) -> None:
+        """Count a request that was refused before it came here."""
+        self._metrics.begin()
+        self._metrics.end("none", method, status=PROBLEMS[problem].status, duration_s=0.0, problem=problem)
 
     def _visit(self, scope: HTTPScope) -> _Visit:
         identity = identity_of(scope)

@@ -61,11 +61,19 @@ _PROBLEM_HEADERS: Final[Node] = {
         "schema": {"type": "string", "maxLength": 64},
     },
 }
-_HEADERS_OF: Final = {401: ("WWW-Authenticate",), 429: ("Retry-After", "RateLimit", "RateLimit-Policy")}
+_HEADERS_OF: Final = {
+    401: ("WWW-Authenticate",),
+    429: ("Retry-After", "RateLimit", "RateLimit-Policy"),
+    503: ("Retry-After",),
+}
 _STATUSES: Final = {
     "all": ("invalid-request", "unauthorized", "not-acceptable", "rate-limited", "internal-error"),
     "named": ("not-found",),
     "body": (
+        "overloaded",
+        "took-too-long",
+        "worker-lost",
+        "not-ready",
         "request-timeout",
         "precondition-failed",
         "payload-too-large",

@@ -81,8 +81,8 @@ _TYPES: Final = (
     ProblemType(
         code="request-timeout",
         status=408,
-        title="The body took too long to arrive",
-        description="The connection is closed. Send the whole body at once.",
+        title="The request took too long to arrive",
+        description="The connection is closed. Send head and body at once.",
     ),
     ProblemType(
         code="precondition-failed",
@@ -123,7 +123,8 @@ _TYPES: Final = (
         title="The request cannot be computed",
         description=(
             "The request keeps to the contract, and no finite answer exists for it. `errors` says where it failed. "
-            "A design that does not close is no such case: it has a budget, with findings."
+            "A design that does not close is no such case: it has a budget, with findings. A request for more "
+            "work than one may ask is one."
         ),
     ),
     ProblemType(
@@ -136,10 +137,40 @@ _TYPES: Final = (
         ),
     ),
     ProblemType(
+        code="header-too-large",
+        status=431,
+        title="The head of the request is too large",
+        description="Target and header fields together take at most 32 KiB. The connection is closed.",
+    ),
+    ProblemType(
         code="internal-error",
         status=500,
         title="The service failed",
         description="The failure is in the service and was logged under the request's id. Please report it.",
+    ),
+    ProblemType(
+        code="overloaded",
+        status=503,
+        title="The service has enough to do",
+        description=(
+            "As many requests are in flight, or wait to be computed, or as many connections are open, as the settings "
+            "of the service let be. Try again after the time in `Retry-After`."
+        ),
+    ),
+    ProblemType(
+        code="took-too-long",
+        status=503,
+        title="The answer takes too long to compute",
+        description=(
+            "The computation was stopped at the bound that the setting `compute_timeout_s` sets. On a service that has "
+            "less to do it may fit in; a design of fewer legs, splits or branches surely computes faster."
+        ),
+    ),
+    ProblemType(
+        code="worker-lost",
+        status=503,
+        title="The process that computed the answer ended",
+        description="Another takes its place. Try again after the time in `Retry-After`.",
     ),
     ProblemType(
         code="not-ready",

@@ -1,40 +1,37 @@
 """Routes of the operations: one for each row of their table, all made alike."""
 
-import asyncio
-import contextlib
 from collections.abc import Iterable
-from typing import Final
 
 import msgspec
 from litestar.enums import HttpMethod
 from litestar.handlers import HTTPRouteHandler
-from litestar.types import ASGIApp
+from litestar.types import ASGIApp, Receive, Scope, Send
 
-from burntally_service import operations
 from burntally_service.api.exchange import AnyRequest, open_exchange, read_body, reply
 from burntally_service.api.settings import Settings
 from burntally_service.api.standing import standing_headers
-from burntally_service.haste import NeedsTimeError
+from burntally_service.api.turns import CallerLeftError, Turns
 from burntally_service.operations import Operation
 
 __all__ = ["operation_routes"]
 
-# A closed form over a short body is done before a thread would have taken it over; a long body may hold up others.
-_INLINE_BODY_BYTES: Final = 16 * 1024
+
+def operation_routes(rows: Iterable[Operation], settings: Settings, turns: Turns) -> list[HTTPRouteHandler]:
+    """Make the routes of the operations, which compute when it is their turn."""
+    return [_route(row, settings, turns) for row in rows]
 
 
-def operation_routes(rows: Iterable[Operation], settings: Settings) -> list[HTTPRouteHandler]:
-    """Make the routes of the operations."""
-    return [_route(row, settings) for row in rows]
-
-
-def _route(operation: Operation, settings: Settings) -> HTTPRouteHandler:
+def _route(operation: Operation, settings: Settings, turns: Turns) -> HTTPRouteHandler:
     standing = standing_headers(operation)
 
     async def handle(request: AnyRequest) -> ASGIApp:
         exchange = open_exchange(request, operation)
         asked = await _asked(request, operation, settings)
-        told = await _told(operation, asked, (exchange.media_type, exchange.accept))
+        media = (exchange.media_type, exchange.accept)
+        try:
+            told = await turns.answer(operation, asked, media, request.receive)
+        except CallerLeftError:
+            return _nothing
         return reply(operation, exchange, asked=asked, told=told, standing=standing)
 
     methods = [HttpMethod.POST] if operation.takes_body else [HttpMethod.GET, HttpMethod.HEAD]
@@ -48,12 +45,8 @@ def _route(operation: Operation, settings: Settings) -> HTTPRouteHandler:
     return route(handle)
 
 
-async def _told(operation: Operation, asked: bytes, media: tuple[str, str]) -> bytes:
-    """Answer where the request arrived if that is quick, in a thread otherwise."""
-    if operation.cost == "inline" and len(asked) <= _INLINE_BODY_BYTES:
-        with contextlib.suppress(NeedsTimeError):
-            return operations.answer(operation.id, asked, *media, in_haste=True)
-    return await asyncio.to_thread(operations.answer, operation.id, asked, *media)
+async def _nothing(scope: Scope, receive: Receive, send: Send) -> None:
+    """Answer a caller who has left."""
 
 
 async def _asked(request: AnyRequest, operation: Operation, settings: Settings) -> bytes:

@@ -1,9 +1,9 @@
 """The server: one process that listens, found by entry point, so that the SDK need not know this package's name."""
 
+import contextlib
 import gc
 import logging
 import signal
-import sys
 from types import FrameType
 from typing import Final
 
@@ -11,14 +11,16 @@ import uvicorn
 
 from burntally_service.api.app import create_app
 from burntally_service.api.callers import is_loopback
+from burntally_service.api.connections import Bounds, bounded
+from burntally_service.api.edge import Edge
 from burntally_service.api.logs import configure_logging
+from burntally_service.api.server import Server
 from burntally_service.api.settings import Settings, settings_from
 
 __all__ = ["serve"]
 
 
 _LOG: Final = logging.getLogger("burntally.serve")
-_SWITCH_INTERVAL_S: Final = 5e-4
 _COLLECT_AFTER: Final = 100_000
 
 
@@ -45,23 +47,34 @@ def serve(host: str | None = None, port: int | None = None) -> None:
     signal.signal(signal.SIGTERM, _already_stopped)
     app = create_app(settings)
     # What has been imported stays, so the collector need not look at it again; a budget makes thousands of objects and
-    # no cycle, so it need not look often either; and a request that computes in a thread gives way to the event loop
-    # ten times as often as by default, since each wait for it costs a whole interval.
+    # no cycle, so it need not look often either.
     gc.collect()
     gc.freeze()
     gc.set_threshold(_COLLECT_AFTER)
-    sys.setswitchinterval(_SWITCH_INTERVAL_S)
-    uvicorn.run(
+    # An interrupt ends the server as a request to stop does, and is raised once more after that.
+    with contextlib.suppress(KeyboardInterrupt):
+        _server(app, settings).run()
+
+
+def _server(app: Edge, settings: Settings) -> Server:
+    """Put application, connections and the server's life together."""
+
+    def drain() -> None:
+        app.app.state.ready = False
+
+    config = uvicorn.Config(
         app,
         host=settings.host,
         port=settings.port,
+        http=bounded(Bounds(settings=settings, on_refusal=app.count_refusal)),
+        ws="none",
         log_config=None,
         log_level=settings.log_level,
         access_log=False,
         proxy_headers=False,
         server_header=False,
-        timeout_graceful_shutdown=round(settings.drain_timeout_s),
     )
+    return Server(config, drain_timeout_s=settings.drain_timeout_s, on_signal=drain, on_late=app.app.state.turns.stop)
 
 
 def _warn(settings: Settings) -> None:

@@ -33,9 +33,27 @@ class Settings(Struct, frozen=True, kw_only=True):
     port: Annotated[int, Meta(ge=0, le=65535, description="Port to listen on; 0: any free one.")] = 8463
     max_body_bytes: Annotated[int, Meta(ge=1024, le=2**30, description="Largest request body.")] = 4 * 2**20
     body_timeout_s: Annotated[float, Meta(gt=0, le=3600, description="Longest that a body may take to arrive.")] = 8.0
+    head_timeout_s: Annotated[
+        float, Meta(gt=0, le=3600, description="Longest that the head of a request may take to arrive.")
+    ] = 8.0
+    compute_timeout_s: Annotated[
+        float, Meta(gt=0, le=3600, description="Longest that a request may compute, and wait for its turn.")
+    ] = 6.0
     drain_timeout_s: Annotated[
         float, Meta(ge=0, le=3600, description="Longest that a stopping server waits for requests in flight.")
     ] = 8.0
+    workers: Annotated[
+        int, Meta(ge=1, le=256, description="Processes for requests that compute long, started when first needed.")
+    ] = 2
+    most_waiting: Annotated[
+        int, Meta(ge=0, le=10_000, description="Requests that may wait for a worker; more are refused.")
+    ] = 16
+    most_in_flight: Annotated[
+        int, Meta(ge=1, le=100_000, description="Requests that may be in flight; more are refused.")
+    ] = 64
+    most_connections: Annotated[
+        int, Meta(ge=1, le=1_000_000, description="Connections that may be open; more are refused.")
+    ] = 768
     log_level: Annotated[
         Literal["critical", "error", "warning", "info", "debug"], Meta(description="Least severity that is logged.")
     ] = "info"

@@ -1,0 +1,271 @@
+"""Connections: what a caller may do with the time and the memory of the server before there is a request at all.
+
+The server's own protocol knows no deadline for a head, none for a body that nobody reads, none for an answer that
+nobody fetches, and tells what is wrong as plain text. This one adds them, below the application, so that a flood is
+refused for less than it costs to send.
+"""
+
+import asyncio
+import logging
+import os
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import Any, Final, Literal
+
+from uvicorn.config import Config
+from uvicorn.protocols.http.httptools_impl import STATUS_LINE, HttpToolsProtocol, RequestResponseCycle
+from uvicorn.server import ServerState
+
+from burntally_service.api.problems import PROBLEM_JSON, ProblemError, refusal_of
+from burntally_service.api.settings import Settings
+
+__all__ = ["Bounds", "bounded"]
+
+_LOG: Final = logging.getLogger("burntally.connections")
+_MOST_HEAD_BYTES: Final = 32 * 1024
+# Time for the application to refuse a late body by itself, which it does in better words.
+_LATE_S: Final = 1.0
+# A connection that is closed with something unread in it is reset, and the answer may be lost with it.
+_LINGER_S: Final = 0.5
+_FETCH_TIMEOUT_S: Final = 8.0
+_TELL_EACH_S: Final = 1.0
+
+_Waits = Literal["head", "body", "nothing"]
+
+
+@dataclass(slots=True, kw_only=True)
+class Bounds:
+    """What all connections share: their limits, and how much of them is used.
+
+    Attributes
+    ----------
+    settings
+        The limits.
+    on_refusal
+        Told of each request that is refused here, by its method and the code of the problem.
+    in_flight
+        Requests that have arrived whole and are not answered yet.
+    """
+
+    settings: Settings
+    on_refusal: Callable[[str, str], None]
+    in_flight: int = 0
+    refused: int = 0
+    told_at_s: float = 0.0
+
+    def refuse(self, method: str, code: str, *, now_s: float) -> None:
+        """Count a refusal; the log is told of many at once, since it costs more than they do."""
+        self.on_refusal(method, code)
+        self.refused += 1
+        if now_s - self.told_at_s >= _TELL_EACH_S:
+            _LOG.warning("requests refused", extra={"fields": {"count": self.refused, "problem": code}})
+            self.refused, self.told_at_s = 0, now_s
+
+
+def bounded(bounds: Bounds) -> type[asyncio.Protocol]:
+    """Make the protocol of the connections that share these bounds."""
+    return type("BoundedConnection", (_Connection,), {"bounds": bounds})
+
+
+class _HeadTooLargeError(Exception):
+    """Raised into the parser, which stops there."""
+
+
+class _Connection(HttpToolsProtocol):
+    """One connection, within bounds."""
+
+    bounds: Bounds
+
+    def __init__(
+        self,
+        config: Config,
+        server_state: ServerState,
+        app_state: dict[str, Any],
+        _loop: asyncio.AbstractEventLoop | None = None,
+    ) -> None:
+        super().__init__(config, server_state, app_state, _loop)
+        self._waits: _Waits = "nothing"
+        self._armed: _Waits = "nothing"
+        self._deadline: asyncio.TimerHandle | None = None
+        self._fetching: asyncio.TimerHandle | None = None
+        self._head_bytes = 0
+        self._is_counted = False
+        self._is_over = False
+
+    def connection_made(self, transport: asyncio.Transport) -> None:  # type: ignore[override]  # as in the base
+        """Take a connection, or refuse it where there are too many."""
+        super().connection_made(transport)
+        if len(self.connections) > self.bounds.settings.most_connections:
+            self.connections.discard(self)
+            self._refuse("GET", "overloaded", "as many connections are open as may be")
+            self._linger()
+        else:
+            self._arm("head", self.bounds.settings.head_timeout_s)
+
+    def connection_lost(self, exc: Exception | None) -> None:
+        """Forget all that was to come of it."""
+        self._disarm()
+        self._unset_keepalive_if_required()
+        if self._fetching is not None:
+            self._fetching.cancel()
+        self._count_out()
+        super().connection_lost(exc)
+
+    def data_received(self, data: bytes) -> None:
+        """Read on, and see that what is still missing comes in time."""
+        if self._is_over:
+            return
+        super().data_received(data)
+        if self.transport.is_closing() or self._is_over:
+            self._disarm()
+        elif self._waits == "body":
+            self._arm("body", self.bounds.settings.body_timeout_s + _LATE_S)
+        elif self._waits == "head" or (self._is_idle() and self.timeout_keep_alive_task is None):
+            # Line ends before a request are no request, and keep nothing open.
+            self._arm("head", self.bounds.settings.head_timeout_s)
+        else:
+            self._disarm()
+
+    def on_message_begin(self) -> None:
+        """Begin a head."""
+        self._waits = "head"
+        self._head_bytes = 0
+        super().on_message_begin()
+
+    def on_url(self, url: bytes) -> None:
+        """Read a piece of the target."""
+        self._grow(len(url))
+        super().on_url(url)
+
+    def on_header(self, name: bytes, value: bytes) -> None:
+        """Read a field of the head."""
+        self._grow(len(name) + len(value))
+        super().on_header(name, value)
+
+    def on_headers_complete(self) -> None:
+        """Begin to answer; the body may still be on its way."""
+        self._waits = "body"
+        super().on_headers_complete()
+
+    def on_message_complete(self) -> None:
+        """Count a request that is whole."""
+        self._waits = "nothing"
+        if not self._is_counted and not self.cycle.response_complete:
+            self._is_counted = True
+            self.bounds.in_flight += 1
+        super().on_message_complete()
+
+    def on_response_complete(self) -> None:
+        """Make room for the next one."""
+        self._count_out()
+        super().on_response_complete()
+
+    def send_400_response(self, msg: str) -> None:
+        """Tell what is no HTTP request as every other problem is told; `msg` is the server's own word for it."""
+        if self._is_counted:
+            # What is odd follows a request that is being answered: that answer comes first, and is the last.
+            self.cycle.keep_alive = False
+            self._is_over = True
+            return
+        is_large = self._head_bytes > _MOST_HEAD_BYTES
+        code = "header-too-large" if is_large else "invalid-request"
+        self._refuse("other", code, f"the head is larger than {_MOST_HEAD_BYTES} bytes" if is_large else msg)
+        self._linger()
+
+    def pause_writing(self) -> None:
+        """Wait for the caller to fetch what was answered, but not for ever."""
+        super().pause_writing()
+        if self._fetching is None:
+            self._fetching = self.loop.call_later(_FETCH_TIMEOUT_S, self.transport.abort)
+
+    def resume_writing(self) -> None:
+        """Go on answering."""
+        super().resume_writing()
+        if self._fetching is not None:
+            self._fetching.cancel()
+            self._fetching = None
+
+    def timeout_keep_alive_handler(self) -> None:
+        """Close a connection that has been idle, with what is left to fetch if it is fetched soon."""
+        super().timeout_keep_alive_handler()
+        self._fetching = self._fetching or self.loop.call_later(_FETCH_TIMEOUT_S, self.transport.abort)
+
+    def _start_asgi_task(self, cycle: RequestResponseCycle, app: Any) -> None:  # noqa: ANN401 - as in the base
+        """Answer a request, or refuse it where too many are being answered."""
+        if self.bounds.in_flight < self.bounds.settings.most_in_flight:
+            super()._start_asgi_task(cycle, app)
+            return
+        self._refuse(cycle.scope["method"], "overloaded", "as many requests are in flight as may be", cycle)
+        cycle.response_started = cycle.response_complete = True
+        if cycle.keep_alive:
+            self.on_response_complete()
+        else:
+            self._linger()
+
+    def _should_upgrade(self) -> bool:
+        return False
+
+    def _unsupported_upgrade_warning(self) -> None:
+        """Say nothing: an upgrade is an offer, and it was not taken."""
+
+    def _is_idle(self) -> bool:
+        return self._waits == "nothing" and not self._is_counted
+
+    def _grow(self, size: int) -> None:
+        self._head_bytes += size
+        if self._head_bytes > _MOST_HEAD_BYTES:
+            raise _HeadTooLargeError
+
+    def _count_out(self) -> None:
+        if self._is_counted:
+            self._is_counted = False
+            self.bounds.in_flight -= 1
+
+    def _arm(self, waits: _Waits, timeout_s: float) -> None:
+        """Set the deadline of what is waited for, unless it is set."""
+        if self._deadline is None or self._armed != waits:
+            self._disarm()
+            self._armed = waits
+            self._deadline = self.loop.call_later(timeout_s, self._cut_off)
+
+    def _disarm(self) -> None:
+        if self._deadline is not None:
+            self._deadline.cancel()
+            self._deadline = None
+
+    def _cut_off(self) -> None:
+        """End a connection on which nothing came in time."""
+        self._deadline = None
+        if self._waits == "head":
+            self._refuse("other", "request-timeout", "the head did not arrive in time")
+            self._linger()
+        else:
+            self.transport.abort()
+
+    def _refuse(self, method: str, code: str, detail: str, cycle: RequestResponseCycle | None = None) -> None:
+        """Write a refusal without asking the application."""
+        self.bounds.refuse(method, code, now_s=self.loop.time())
+        headers = {"Retry-After": "1"} if code == "overloaded" else {}
+        request_id = os.urandom(8).hex()
+        refusal = refusal_of(ProblemError(code, detail, headers=headers), request_id)
+        fields = {
+            **refusal.headers,
+            "Content-Type": PROBLEM_JSON,
+            "Content-Length": str(len(refusal.body)),
+            "X-Request-Id": request_id,
+            "X-Content-Type-Options": "nosniff",
+        }
+        if cycle is None or not cycle.keep_alive:
+            fields["Connection"] = "close"
+        lines = [b"%s: %s\r\n" % field for field in self.server_state.default_headers]
+        lines += [f"{name.lower()}: {value}\r\n".encode("latin-1") for name, value in fields.items()]
+        body = b"" if method == "HEAD" else refusal.body
+        self.transport.write(b"".join((STATUS_LINE[refusal.status], *lines, b"\r\n", body)))
+
+    def _linger(self) -> None:
+        """Close once the caller has, or soon, and throw away what still comes."""
+        self._is_over = True
+        self._disarm()
+        if self.transport.can_write_eof():
+            self.transport.write_eof()
+        self.loop.call_later(_LINGER_S, self.transport.abort)

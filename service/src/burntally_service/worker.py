@@ -1,0 +1,171 @@
+"""A worker: a process of its own that answers one request after another, and can be stopped in any of them.
+
+What computes long is pure Python, which holds the interpreter: in a thread it would hold up every other request, and
+nothing could stop it. In the main thread of a process of its own a signal can, between any two instructions, so that
+no computation need ask whether it should go on.
+
+It reads requests from its standard input and writes answers to its standard output, each as a length and MessagePack.
+"""
+
+import importlib
+import os
+import signal
+import struct
+import sys
+import traceback
+from dataclasses import dataclass
+from types import FrameType
+from typing import BinaryIO, Final
+
+import msgspec
+from msgspec import Struct
+
+from burntally.model.errors import ContractError, NotFoundError, UncomputableError, Violation
+from burntally_service.operations import answer
+
+__all__ = ["HEAD", "STOP", "Answered", "Asked", "Failed", "Outcome", "Refused", "Stopped", "main", "read_outcome"]
+
+HEAD: Final = struct.Struct(">I")
+"""Length of what follows [B]."""
+
+STOP: Final = signal.SIGUSR1
+"""Stops the computation at hand; between two of them it does nothing."""
+
+# The event loop goes first where there are more processes than cores.
+_NICER_BY: Final = 5
+
+
+class Asked(Struct, frozen=True, kw_only=True, array_like=True):
+    """One request, as `answer` takes it, and how long it may compute [s]."""
+
+    operation_id: str
+    body: bytes
+    media_type: str
+    accept: str
+    timeout_s: float
+
+
+class Answered(Struct, frozen=True, kw_only=True, array_like=True, tag=1):
+    """The answer."""
+
+    body: bytes
+
+
+class Refused(Struct, frozen=True, kw_only=True, array_like=True, tag=2):
+    """The request was at fault."""
+
+    code: str
+    violations: list[Violation]
+
+
+class Failed(Struct, frozen=True, kw_only=True, array_like=True, tag=3):
+    """The service was at fault; for the log alone."""
+
+    traceback: str
+
+
+class Stopped(Struct, frozen=True, kw_only=True, array_like=True, tag=4):
+    """The time was over, or nobody wants the answer any more; `is_last`: the worker ends with it."""
+
+    is_last: bool
+
+
+Outcome = Answered | Refused | Failed | Stopped
+"""What one request ends in."""
+
+
+class _StoppedError(BaseException):
+    """Raised wherever the computation is; no ``except Exception`` on the way may swallow it."""
+
+
+@dataclass(slots=True)
+class _Desk:
+    """Whether there is anything to stop."""
+
+    is_computing: bool = False
+
+    def stop(self, number: int, frame: FrameType | None) -> None:  # noqa: ARG002 - a signal handler has this shape
+        """Stop the computation at hand."""
+        if self.is_computing:
+            self.is_computing = False
+            raise _StoppedError
+
+
+def main() -> None:
+    """Answer requests until there are no more of them."""
+    desk = _Desk()
+    # An interrupt typed at a terminal reaches the whole group; the server decides when its workers end.
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
+    signal.signal(STOP, desk.stop)
+    signal.signal(signal.SIGALRM, desk.stop)
+    os.nice(_NICER_BY)
+    _load()
+    source = os.fdopen(os.dup(0), "rb")
+    sink = os.fdopen(os.dup(1), "wb")
+    # Whatever prints by mistake must not be taken for an answer.
+    os.dup2(2, 1)
+    with source, sink:
+        _serve(desk, source, sink)
+
+
+def _load() -> None:
+    """Import what answers are computed with, which is not to count as computing."""
+    importlib.import_module("burntally_service.budget")
+    importlib.import_module("burntally_service.vehicle.performance")
+
+
+def _serve(desk: _Desk, source: BinaryIO, sink: BinaryIO) -> None:
+    decoder = msgspec.msgpack.Decoder(Asked)
+    while len(head := source.read(HEAD.size)) == HEAD.size:
+        outcome = _outcome(desk, decoder.decode(source.read(*HEAD.unpack(head))))
+        told = msgspec.msgpack.encode(outcome)
+        try:
+            sink.write(HEAD.pack(len(told)) + told)
+            sink.flush()
+        except BrokenPipeError:
+            # The server is gone, and so is whoever asked.
+            os._exit(0)
+        if isinstance(outcome, Stopped) and outcome.is_last:
+            return
+
+
+def _outcome(desk: _Desk, asked: Asked) -> Outcome:
+    """Answer one request within its time."""
+    modules = len(sys.modules)
+    try:
+        try:
+            desk.is_computing = True
+            signal.setitimer(signal.ITIMER_REAL, asked.timeout_s)
+            return _told(asked)
+        finally:
+            desk.is_computing = False
+            signal.setitimer(signal.ITIMER_REAL, 0.0)
+    except _StoppedError:
+        # An import that was cut off may have left half a module behind, and nothing here can tell.
+        return Stopped(is_last=len(sys.modules) != modules)
+
+
+def _told(asked: Asked) -> Outcome:
+    try:
+        return Answered(body=answer(asked.operation_id, asked.body, asked.media_type, asked.accept))
+    except (ContractError, UncomputableError, NotFoundError) as error:
+        return Refused(code=error.code, violations=list(error.violations))
+    except RecursionError:
+        return Refused(
+            code=ContractError.code, violations=[Violation(pointer="", message="the body is nested too deeply")]
+        )
+    except Exception:  # noqa: BLE001 - whatever it is, the one who asked is told and the next one is served
+        return Failed(traceback=traceback.format_exc())
+
+
+_OUTCOMES: Final = msgspec.msgpack.Decoder(Outcome)
+
+
+def read_outcome(told: bytes) -> Outcome:
+    """Read what a worker wrote."""
+    outcome: Outcome = _OUTCOMES.decode(told)
+    return outcome
+
+
+if __name__ == "__main__":
+    main()
