@@ -1,8 +1,10 @@
 """The ledger of many designs, against the same ledger in blocked numpy, in one run; and one ledger in plain Python."""
 
+import statistics
 import sys
 import time
 from collections.abc import Callable
+from concurrent.futures import ThreadPoolExecutor
 from typing import Any
 
 import msgspec
@@ -13,12 +15,11 @@ from numpy.typing import NDArray
 from burntally.model.design import Design
 from burntally_service.budget.drawing import Drawn, draw
 from burntally_service.kernels import tally_rows as rows
-from burntally_service.kernels._compile import compiled
-from burntally_service.kernels._records import books_record, flat_cells, tables_record
 from burntally_service.kernels.constants import G0
 from burntally_service.kernels.tally import tally
 from burntally_service.kernels.tally_books import blank_books
 from burntally_service.kernels.tally_lanes import tally_lanes
+from burntally_service.kernels.tally_rows import Books
 from burntally_service.kernels.tally_slack import slacks
 
 pytestmark = pytest.mark.benchmark
@@ -26,6 +27,8 @@ pytestmark = pytest.mark.benchmark
 LANES = 1_000_000
 BLOCK = 8192
 ROUNDS = 5
+LOOPS = 4.0
+"""100 us, where such a loop takes 25 to 28 us."""
 
 _TUG = {"paid_by": ["tug"]}
 DESIGN: dict[str, Any] = {
@@ -89,14 +92,16 @@ def drawn() -> Drawn:
     return draw(msgspec.convert(DESIGN, Design))
 
 
-def best(work: Callable[[], object], rounds: int = ROUNDS) -> float:
-    """Least time of several rounds [s]."""
-    times: list[float] = []
-    for _ in range(rounds):
-        start = time.perf_counter()
-        work()
-        times.append(time.perf_counter() - start)
-    return min(times)
+def alternating(first: Callable[[], object], second: Callable[[], object], rounds: int = ROUNDS) -> list[list[float]]:
+    """Times of two works in turn [s], since a shared machine is fast at one moment and slow at the next."""
+    return [[once(first), once(second)] for _ in range(rounds)]
+
+
+def once(work: Callable[[], object]) -> float:
+    """Time of one run [s]."""
+    start = time.perf_counter()
+    work()
+    return time.perf_counter() - start
 
 
 def drawn_columns(drawn: Drawn) -> dict[str, NDArray[np.float64]]:
@@ -114,29 +119,19 @@ def drawn_columns(drawn: Drawn) -> dict[str, NDArray[np.float64]]:
     return {name: value * generator.uniform(0.98, 1.02, LANES) for name, value in nominal.items()}
 
 
-ROWS = {"items": rows.ItemRow, "loads": rows.LoadRow, "engines": rows.EngineRow, "steps": rows.StepRow}
+def outcomes_of(books: Books) -> list[float]:
+    """What the main branch owes, and its mass at the end."""
+    return [books.branch_owed[0], books.branch_mass[0]]
 
 
 def in_lanes(drawn: Drawn, columns: dict[str, NDArray[np.float64]]) -> Callable[[], NDArray[np.float64]]:
-    """The compiled tally over all lanes."""
-    tables = tables_record(drawn.lowered.tables)
-    cells, places = flat_cells(tables)
-    slots: list[int] = []
-    for name in columns:
-        table, row, field = name.split("/")
-        first, width = places[table]
-        slots.append(first + int(row) * width + ROWS[table].__struct_fields__.index(field))
-    where = np.array(slots)
+    """The tally over all lanes."""
+    names = [name.split("/") for name in columns]
+    cells = [(table, int(row), field) for table, row, field in names]
     values = np.array(list(columns.values()))
-    outcomes = np.zeros((2, LANES))
-    twin: Any = compiled(tally_lanes)
-
-    def run() -> NDArray[np.float64]:
-        twin(tables[0], books_record(drawn.lowered.tables)[0], cells, where, (values, outcomes))
-        return outcomes
-
-    twin(tables[0], books_record(drawn.lowered.tables)[0], cells, where, (values[:, :1], outcomes[:, :1]))
-    return run
+    # Compiled here, or read from the disk.
+    tally_lanes(drawn.lowered.tables, cells, values[:, :1], outcomes_of)
+    return lambda: tally_lanes(drawn.lowered.tables, cells, values, outcomes_of)
 
 
 class NumpyLedger:
@@ -221,13 +216,32 @@ def test_a_million_ledgers_are_not_slower_than_blocked_numpy(drawn: Drawn, capsy
     columns = drawn_columns(drawn)
     lanes, peer = in_lanes(drawn, columns), in_numpy(drawn, columns)
     assert np.allclose(lanes(), peer(), rtol=1e-9, atol=1e-6)
-    ours, theirs = best(lanes), best(peer)
+    pairs = alternating(lanes, peer)
+    ours, theirs = min(pair[0] for pair in pairs), min(pair[1] for pair in pairs)
+    ratio = statistics.median(pair[1] / pair[0] for pair in pairs)
     with capsys.disabled():
         sys.stdout.write(
             f"\nledger of 3 stages and 10 legs, {LANES} designs: {ours / LANES * 1e6:.2f} us each, "
-            f"blocked numpy {theirs / LANES * 1e6:.2f} us, ratio {theirs / ours:.2f}\n"
+            f"blocked numpy {theirs / LANES * 1e6:.2f} us, ratio {ratio:.2f}\n"
         )
-    assert ours <= theirs
+    assert ratio >= 1.0
+
+
+def test_two_threads_of_ledgers_are_nearly_twice_as_fast(drawn: Drawn, capsys: pytest.CaptureFixture[str]) -> None:
+    columns = drawn_columns(drawn)
+    halves = [
+        {name: column[half] for name, column in columns.items()} for half in (slice(None, None, 2), slice(1, None, 2))
+    ]
+    whole, parts = in_lanes(drawn, columns), [in_lanes(drawn, half) for half in halves]
+    with ThreadPoolExecutor(2) as pool:
+        together = list(pool.map(lambda part: part(), parts))
+        assert np.array_equal(whole()[:, ::2], together[0])
+        pairs = alternating(whole, lambda: list(pool.map(lambda part: part(), parts)), 2 * ROUNDS)
+    # Both at their best: on a shared machine the second core is often busy with something else.
+    ratio = min(pair[0] for pair in pairs) / min(pair[1] for pair in pairs)
+    with capsys.disabled():
+        sys.stdout.write(f"\nledgers on two threads against one: {ratio:.2f}\n")
+    assert ratio >= 1.8
 
 
 def test_one_ledger_with_slack_in_plain_python(drawn: Drawn, capsys: pytest.CaptureFixture[str]) -> None:
@@ -245,7 +259,9 @@ def test_one_ledger_with_slack_in_plain_python(drawn: Drawn, capsys: pytest.Capt
             total += number
         return total
 
-    ours, unit = best(work, 300), best(loop, 300)
+    pairs = alternating(work, loop, 2000)
+    ours = min(pair[0] for pair in pairs)
+    ratio = statistics.median(pair[0] / pair[1] for pair in pairs)
     with capsys.disabled():
-        sys.stdout.write(f"\ntally with slack: {ours * 1e6:.0f} us, {ours / unit:.1f} loops of 1000 additions\n")
-    assert ours < 20 * unit
+        sys.stdout.write(f"\ntally with slack: {ours * 1e6:.0f} us, {ratio:.1f} loops of 1000 additions\n")
+    assert ratio <= LOOPS

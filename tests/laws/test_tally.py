@@ -10,6 +10,7 @@ import msgspec
 import pytest
 from hypothesis import assume, given, settings
 from hypothesis import strategies as st
+from msgspec import structs
 
 from burntally.model.decode import decode_builtins
 from burntally.model.design import Design
@@ -19,6 +20,7 @@ from burntally_service.budget.leg_books import branch_books
 from burntally_service.budget.stage_books import stage_books
 from burntally_service.kernels import tally_rows as rows
 from burntally_service.kernels.constants import G0
+from burntally_service.kernels.tally import tally
 from burntally_service.kernels.tally_books import blank_books, stage_mass
 from burntally_service.kernels.tally_search import owed_with, slack_by_search
 from tests.laws.drawn_designs import NAMES, designs, plain_stages, simple_designs
@@ -346,6 +348,23 @@ def test_slack_is_what_a_search_over_the_books_finds(plain: Plain) -> None:
     told = [(mark, slack) for mark, slack in enumerate(books.slack) if slack is not None]
     found = [slack_by_search(tables, scratch, mark) for mark, _ in told]
     assert [slack for _, slack in told] == pytest.approx(found, rel=1e-8, abs=1e-6)
+
+
+KEPT_FLOWS = frozenset({"flow", "flow_of", "flow_thrust", "flow_mdot", "flow_mask"})
+"""What only the long way keeps."""
+
+
+@FEWER
+@given(designs())
+def test_one_engine_on_one_load_burns_as_engines_on_loads_do(plain: Plain) -> None:
+    short = drawn(plain).lowered.tables
+    long = structs.replace(short, burners=[structs.replace(row, lone=-1, mask=0) for row in short.burners])
+    books = [blank_books(tables, 500) for tables in (short, long)]
+    for tables, blank in zip((short, long), books, strict=True):
+        tally(tables, blank)
+    for name in set(rows.Books.__struct_fields__) - KEPT_FLOWS:
+        found, expected = (getattr(book, name) for book in books)
+        assert found == pytest.approx(expected, rel=1e-10, abs=1e-7), name
 
 
 @FEWER

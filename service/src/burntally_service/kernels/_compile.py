@@ -9,42 +9,18 @@ import os
 import sys
 import tempfile
 import threading
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Mapping
 from pathlib import Path
 from types import FunctionType
 from typing import Any, Final, ParamSpec, TypeGuard, TypeVar, cast
 
-__all__ = ["INLINED", "cache_directory", "compiled", "kernel_digest"]
+__all__ = ["cache_directory", "compiled", "kernel_digest", "rebound"]
 
 _P = ParamSpec("_P")
 _R = TypeVar("_R")
 
 _PACKAGE: Final = __name__.rpartition(".")[0]
 _DIGEST_LENGTH: Final = 16
-
-INLINED: Final = frozenset(
-    {
-        "_begin",
-        "_burn_lone",
-        "_contingency",
-        "_end",
-        "_ignite",
-        "_lose",
-        "_lose_lone",
-        "_manoeuvre",
-        "_wipe_legs",
-        "engines_flow",
-        "lit_mask",
-        "load_up",
-        "pay",
-        "stage_mass",
-        "tally",
-        "wipe",
-        "write_line",
-    }
-)
-"""Kernels on the way that every burn takes: inlined, a ledger of lanes runs four times as fast. To inline all of them
-would compile twice as long for nothing."""
 
 _twins: dict[FunctionType, Callable[..., object]] = {}
 _lock = threading.RLock()
@@ -65,7 +41,7 @@ def compiled(kernel: Callable[_P, _R]) -> Callable[_P, _R]:
     -------
     callable
         The twin. It takes floats, named tuples of floats, float64 arrays in place of sequences of floats, and
-        structured arrays (see `_records`) in place of sequences of rows.
+        structured arrays (see `_records`) in place of sequences of named tuples.
 
     Raises
     ------
@@ -153,16 +129,33 @@ def _is_kernel(thing: object) -> TypeGuard[FunctionType]:
 def _twin(kernel: FunctionType) -> Callable[..., object]:
     """Make the twin of a kernel after the twins of those that it calls."""
     if kernel not in _twins:
-        _twins[kernel] = _compile(_rebound(kernel))
+        _twins[kernel] = _compile(rebound(kernel, _twin, {}))
     return _twins[kernel]
 
 
-def _rebound(kernel: FunctionType) -> FunctionType:
-    """Copy a kernel, with the kernels among its globals replaced by their twins."""
-    names = {**kernel.__globals__}
+def rebound(
+    kernel: FunctionType, twin_of: Callable[[FunctionType], Callable[..., object]], others: Mapping[str, object]
+) -> FunctionType:
+    """Copy a kernel so that it calls other things by the names that it uses.
+
+    Parameters
+    ----------
+    kernel
+        Plain function of the kernels package.
+    twin_of
+        Gives what is called in place of each kernel among its globals.
+    others
+        What else its globals shall mean, by name.
+
+    Returns
+    -------
+    function
+        The copy.
+    """
+    names = {**kernel.__globals__, **others}
     for name in kernel.__code__.co_names:
         if _is_kernel(callee := names.get(name)):
-            names[name] = _twin(callee)
+            names[name] = twin_of(callee)
     copy = FunctionType(kernel.__code__, names, kernel.__name__, kernel.__defaults__, kernel.__closure__)
     copy.__module__ = kernel.__module__
     copy.__qualname__ = kernel.__qualname__
@@ -185,7 +178,6 @@ def _compile(function: FunctionType) -> Callable[..., object]:
             cache=folder is not None,
             nogil=True,
             error_model="numpy",
-            forceinline=function.__name__ in INLINED,
         )
     finally:
         settings["CACHE_DIR"] = before

@@ -1,36 +1,80 @@
 """Many designs of one shape: the same tally, once for each lane of columns."""
 
-from collections.abc import Sequence
-from typing import Any
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from typing import TYPE_CHECKING, Any
+
+from msgspec import structs
 
 from burntally_service.kernels.tally import tally
-from burntally_service.kernels.tally_books import wipe
+from burntally_service.kernels.tally_books import blank_books
 from burntally_service.kernels.tally_rows import Books, Tables
 
-__all__ = ["tally_lanes"]
+if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
+__all__ = ["tally_lanes", "with_cells"]
+
+Cell = tuple[str, int, str]
+"""A list of the tables, a row of it, a field of the row."""
 
 
-def tally_lanes(tables: Tables, books: Books, cells: list[float], slots: Sequence[int], lanes: tuple[Any, Any]) -> None:
+def with_cells(tables: Tables, cells: Sequence[Cell], numbers: Sequence[float]) -> Tables:
+    """Tables with other numbers in some of their cells.
+
+    Parameters
+    ----------
+    tables : Tables
+        The rows of a design and its plan.
+    cells : sequence of Cell
+        The cells that change, [-].
+    numbers : sequence of float
+        What they hold, in their own units, [kg], [m/s], ….
+
+    Returns
+    -------
+    Tables
+        New tables, numbers in the units of their cells, [kg], [m/s], …; rows that do not change are shared.
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rules; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> with_cells(NO_TABLES, [], []) == NO_TABLES
+    True
+    """
+    lists: dict[str, list[Any]] = {}
+    for (name, row, field), number in zip(cells, numbers, strict=True):
+        rows = lists.setdefault(name, list(getattr(tables, name)))
+        rows[row] = structs.replace(rows[row], **{field: number})
+    return structs.replace(tables, **lists)
+
+
+def tally_lanes(
+    tables: Tables, cells: Sequence[Cell], columns: NDArray[np.float64], read: Callable[[Books], Sequence[float]]
+) -> NDArray[np.float64]:
     """Tally one design for each lane, with the lane's numbers in some cells of its tables.
 
     Parameters
     ----------
     tables : Tables
-        The record of the design; its cells are changed.
-    books : Books
-        Blank books, used for every lane.
-    cells : array of float
-        All cells of the tables' record, a view of its memory.
-    slots : array of int
-        Cells that the lanes fill, shape (n_slots,), [-].
-    lanes : tuple of arrays of float
-        Columns, shape (n_slots, n_lanes), in the units of their cells; outcomes, shape (2, n_lanes): what the main
-        branch owes [m/s] and its mass at the end [kg]; changed.
+        The rows of the design and its plan.
+    cells : sequence of Cell
+        Cells that the lanes fill, [-].
+    columns : numpy.ndarray
+        The numbers, shape (n_cells, n_lanes), in the units of their cells, [kg], [m/s], ….
+    read : callable
+        Takes the books of a lane, without lines; returns the outcomes that are wanted of them.
 
     Returns
     -------
-    None
-        The outcomes are filled in, [m/s] and [kg].
+    numpy.ndarray
+        Outcomes, shape (n_outcomes, n_lanes), with the bits of the tally of each design alone, [kg], [m/s], ….
 
     References
     ----------
@@ -38,17 +82,18 @@ def tally_lanes(tables: Tables, books: Books, cells: list[float], slots: Sequenc
 
     Examples
     --------
-    >>> from burntally_service.kernels.tally_books import blank_books
-    >>> from burntally_service.kernels.tally_rows import NO_TABLES
     >>> import numpy as np
-    >>> empty = NO_TABLES
-    >>> tally_lanes(empty, blank_books(empty, 0), [], [], (np.zeros((0, 0)), np.zeros((2, 0))))
+    >>> from burntally_service.kernels.tally_rows import NO_TABLES
+    >>> tally_lanes(NO_TABLES, [], np.zeros((0, 2)), lambda books: [1.0])
+    array([[1., 1.]])
     """
-    columns, outcomes = lanes
-    for lane in range(outcomes.shape[1]):
-        for place in range(len(slots)):
-            cells[slots[place]] = columns[place, lane]
-        wipe(tables, books)
-        tally(tables, books)
-        outcomes[0, lane] = books.branch_owed[0]
-        outcomes[1, lane] = books.branch_mass[0]
+    # numpy is loaded here, since a process that computes single designs must never pay for it.
+    from burntally_service.kernels._lanes import in_lanes
+
+    def run(kernel: Callable[[Tables, Books], None], numbers: Sequence[float]) -> Sequence[float]:
+        filled = with_cells(tables, cells, numbers)
+        books = blank_books(filled, 0)
+        kernel(filled, books)
+        return read(books)
+
+    return in_lanes(tally, run, columns)
