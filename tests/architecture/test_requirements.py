@@ -5,7 +5,7 @@ from pathlib import Path
 
 import pytest
 
-FILES = ["requirements.txt", "requirements-dev.txt", "requirements-referee.txt"]
+FILES = ["requirements.txt", "requirements-dev.txt", "requirements-referee.txt", "requirements-clients.txt"]
 
 
 def _pins(path: Path) -> dict[str, str]:

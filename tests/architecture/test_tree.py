@@ -15,6 +15,7 @@ TOP = {
     "docker",
     "openapi",
     "pyproject.toml",
+    "requirements-clients.txt",
     "requirements-dev.txt",
     "requirements-referee.txt",
     "requirements.txt",
