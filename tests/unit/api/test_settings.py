@@ -92,12 +92,6 @@ BAD: list[tuple[str, str]] = [
     ("most_waiting", "-1"),
     ("most_in_flight", "0"),
     ("most_connections", "0"),
-    ("head_timeout_s", "0"),
-    ("compute_timeout_s", "soon"),
-    ("workers", "0"),
-    ("most_waiting", "-1"),
-    ("most_in_flight", "0"),
-    ("most_connections", "many"),
     ("drain_timeout_s", "-1"),
     ("drain_timeout_s", "inf"),
     ("log_level", "loud"),
@@ -192,4 +186,4 @@ def test_every_setting_is_documented_with_its_default() -> None:
 
 
 def test_every_setting_has_a_bad_value_above() -> None:
-    assert set(NAMES) - {name for name, _ in BAD} == set()
+    assert {name for name, _ in BAD} == set(NAMES)
