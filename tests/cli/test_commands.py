@@ -156,6 +156,7 @@ def test_a_violation_of_the_file_names_its_pointer(
         errors.TimedOut("late"),
         Reply(status=503, body=b""),
         Reply(status=429, body=b""),
+        Reply(status=401, body=b""),
     ],
     ids=repr,
 )
@@ -169,6 +170,33 @@ def test_a_service_out_of_reach_has_its_code(
     monkeypatch.setattr("time.sleep", lambda _: None)
     assert main(["check", design, "--server", "http://127.0.0.1:1"]) == ExitCode.NOT_REACHABLE
     assert capsys.readouterr().out == ""
+
+
+@pytest.mark.parametrize(
+    "given,sent", [("a-token-of-ours", "a-token-of-ours"), ("new-token\nold-token\n", "new-token"), ("", None)]
+)
+def test_a_server_is_shown_the_token_of_the_environment(
+    given: str, sent: str | None, design: str, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    shown: list[str | None] = []
+
+    def connect(*_: object, token: str | None, **__: object) -> object:
+        shown.append(token)
+        raise errors.ConnectionFailed("no matter")
+
+    monkeypatch.setattr("burntally.client.connect", connect)
+    monkeypatch.setenv("BURNTALLY_TOKEN", given)
+    main(["check", design, "--server", "http://127.0.0.1:1"])
+    assert shown == [sent]
+
+
+def test_a_token_that_cannot_be_sent_is_usage_and_not_told(
+    design: str, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.setenv("BURNTALLY_TOKEN", "ünsafe")
+    assert main(["check", design, "--server", "http://127.0.0.1:1"]) == ExitCode.USAGE
+    told = capsys.readouterr()
+    assert (told.out, "BURNTALLY_TOKEN" in told.err, "ünsafe" in told.err) == ("", True, False)
 
 
 @pytest.mark.parametrize("argv", [["check", "x.toml"], ["serve"]], ids=" ".join)

@@ -16,6 +16,7 @@ Ask = Callable[..., Any]
 
 URL = "http://burntally.test"
 BODIES = b'{"bodies":[]}'
+TOKEN = "an-invented-token"  # noqa: S105 - invented
 
 
 class Script:
@@ -134,6 +135,8 @@ CLASSES: Iterable[tuple[int, str, type[errors.StatusError]]] = [
     (400, "invalid-request", errors.InvalidRequest),
     (422, "inconsistent-request", errors.InconsistentRequest),
     (422, "uncomputable", errors.Uncomputable),
+    (401, "unauthorized", errors.Unauthorized),
+    (429, "rate-limited", errors.RateLimited),
     (404, "not-found", errors.NotFound),
     (413, "payload-too-large", errors.TooLarge),
     # A code that this SDK does not know has the class of its status.
@@ -146,7 +149,7 @@ CLASSES: Iterable[tuple[int, str, type[errors.StatusError]]] = [
 @pytest.mark.parametrize("status,code,kind", CLASSES)
 def test_a_problem_has_its_class(status: int, code: str, kind: type[errors.StatusError], ask: Ask) -> None:
     with pytest.raises(errors.StatusError) as caught:
-        ask(Script(problem(status, code)), "bodies")
+        ask(Script(problem(status, code)), "bodies", tries=1)
     assert type(caught.value) is kind
 
 
@@ -181,8 +184,48 @@ def test_a_header_that_httpx_does_not_know_arrives(ask: Ask) -> None:
 
 def test_a_token_is_sent(ask: Ask) -> None:
     script = Script(good())
-    ask(script, "bodies", token="open-sesame")  # noqa: S106 -- invented
-    assert script.asked[0].headers["authorization"] == "Bearer open-sesame"
+    ask(script, "bodies", token=TOKEN)
+    assert script.asked[0].headers["authorization"] == f"Bearer {TOKEN}"
+
+
+def test_without_a_token_none_is_sent(ask: Ask) -> None:
+    script = Script(good())
+    ask(script, "bodies")
+    assert "authorization" not in script.asked[0].headers
+
+
+@pytest.mark.usefixtures("pauses")
+@pytest.mark.parametrize(
+    "scene",
+    [401, 403, 500, httpx2.ConnectError("refused"), httpx2.ReadTimeout("late")],
+    ids=repr,
+)
+def test_no_error_tells_the_token(scene: Any, ask: Ask) -> None:
+    with pytest.raises(errors.ClientError) as caught:
+        ask(Script(*[scene] * 2), "bodies", token=TOKEN, tries=2)
+    told = [repr(caught.value), str(caught.value), repr(caught.value.request), repr(vars(caught.value))]
+    assert TOKEN not in "".join(told)
+
+
+@pytest.mark.parametrize(
+    "address", ["http://elsewhere.test/v1/bodies", "https://burntally.test/v1/bodies", "//x.test/"]
+)
+def test_a_token_goes_to_no_other_address(address: str, ask: Ask) -> None:
+    script = Script(httpx2.Response(307, headers={"Location": address}), good())
+    with pytest.raises(errors.StatusError):
+        ask(script, "bodies", token=TOKEN)
+    assert len(script.asked) == 1
+
+
+@pytest.mark.parametrize("token", ["", "two words", "line\nend", "ünsafe", "tab\t"], ids=repr)
+def test_a_token_that_no_header_holds_is_refused_unquoted(token: str, ask: Ask) -> None:
+    with pytest.raises(ValueError, match=r"^a token is of visible ASCII characters, without spaces$"):
+        ask(Script(), "bodies", token=token)
+
+
+def test_no_client_tells_its_token() -> None:
+    with connect(URL, token=TOKEN) as client:
+        assert TOKEN not in repr(client) + repr(vars(client)) + repr(vars(client)["_sender"])
 
 
 def test_one_in_ten_requests_may_fail(ask: Ask, pauses: list[float]) -> None:
