@@ -3,6 +3,7 @@
 import asyncio
 import json
 import logging
+import subprocess
 from collections.abc import Iterator
 from typing import Any
 
@@ -248,3 +249,13 @@ def test_a_service_that_starts_or_drains_lives_and_is_not_ready(ready: bool, sta
     told = call(fresh, "/readyz")
     assert (told.status, call(fresh, "/healthz").status) == (status, 200)
     assert told.headers.get("retry-after") == (None if ready else "1")
+
+
+@pytest.mark.release
+def test_prometheus_own_linter_has_nothing_to_say(fresh: Edge) -> None:
+    """`promtool` comes with Debian's package `prometheus`; it has to be on the path."""
+    for path in ("/v1/rules", "/v1/budgets", "/nothing"):
+        call(fresh, path)
+    exposed = call(fresh, "/metrics").body
+    done = subprocess.run(["promtool", "check", "metrics"], input=exposed, capture_output=True, check=False)
+    assert (done.returncode, done.stdout + done.stderr) == (0, b"")
