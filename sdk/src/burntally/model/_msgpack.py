@@ -20,17 +20,13 @@ _LAST_LIST: Final = 0x9F
 _LAST_TEXT: Final = 0xBF
 _FIRST_NEGATIVE: Final = 0xE0
 # First byte of each format: what its header holds, and what follows as many times (or bytes) as the header says.
-_SCALARS: Final = {0xCA: ">f", 0xCB: ">d", 0xCC: ">B", 0xCD: ">H", 0xCE: ">I", 0xCF: ">Q"} | {
-    0xD0: ">b",
-    0xD1: ">h",
-    0xD2: ">i",
-    0xD3: ">q",
-}
-_TEXTS: Final = {0xD9: ">B", 0xDA: ">H", 0xDB: ">I"}
-_BINARIES: Final = {0xC4: ">B", 0xC5: ">H", 0xC6: ">I"}
-_EXTENSIONS: Final = {0xC7: ">B", 0xC8: ">H", 0xC9: ">I"}
-_LISTS: Final = {0xDC: ">H", 0xDD: ">I"}
-_MAPS: Final = {0xDE: ">H", 0xDF: ">I"}
+_B, _H, _I = (struct.Struct(f">{kind}") for kind in "BHI")
+_SCALARS: Final = {first: struct.Struct(f">{kind}") for first, kind in enumerate("fdBHIQbhiq", 0xCA)}
+_TEXTS: Final = {0xD9: _B, 0xDA: _H, 0xDB: _I}
+_BINARIES: Final = {0xC4: _B, 0xC5: _H, 0xC6: _I}
+_EXTENSIONS: Final = {0xC7: _B, 0xC8: _H, 0xC9: _I}
+_LISTS: Final = {0xDC: _H, 0xDD: _I}
+_MAPS: Final = {0xDE: _H, 0xDF: _I}
 _NIL_TO_TRUE: Final = {0xC0: None, 0xC2: False, 0xC3: True}
 
 
@@ -56,7 +52,8 @@ class _Reader:
         self._at = 0
 
     def value(self) -> object:
-        first = int(self._number(">B"))
+        first = self._data[self._at]
+        self._at += 1
         if first <= _LAST_POSITIVE:
             return first
         if first >= _FIRST_NEGATIVE:
@@ -84,13 +81,13 @@ class _Reader:
         key = self.value()
         return repr(key) if is_list(key) or is_object(key) else key
 
-    def _count(self, first: int, headers: dict[int, str], mask: int) -> int:
+    def _count(self, first: int, headers: dict[int, struct.Struct], mask: int) -> int:
         header = headers.get(first)
         return first & mask if header is None else int(self._number(header))
 
-    def _number(self, header: str) -> int | float:
-        number: int | float = struct.unpack_from(header, self._data, self._at)[0]
-        self._at += struct.calcsize(header)
+    def _number(self, header: struct.Struct) -> int | float:
+        number: int | float = header.unpack_from(self._data, self._at)[0]
+        self._at += header.size
         return number
 
     def _bytes(self, count: int) -> bytes:

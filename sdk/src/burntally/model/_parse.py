@@ -115,24 +115,27 @@ def too_deep() -> ContractError:
     return one_violation("the body is nested too deep", expected=f"at most {DEEPEST} levels")
 
 
-def depth_of(parsed: object) -> int:
+def depth_of(parsed: object, *, is_tree: bool) -> int:
     """Count the levels of nesting, up to one more than `DEEPEST`.
 
     Parameters
     ----------
     parsed : object
         Plain values.
+    is_tree : bool
+        Whether each value stands in one place alone; in YAML one may stand in many.
 
     Returns
     -------
     int
         Levels; 0 for a lone scalar.
     """
-    level = _containers([parsed])
+    containers = _containers if is_tree else _distinct_containers
+    level = containers([parsed])
     depth = 0
     while level and depth <= DEEPEST:
         depth += 1
-        level = _containers(inner for held in level for inner in (held.values() if isinstance(held, dict) else held))
+        level = containers(inner for held in level for inner in (held.values() if isinstance(held, dict) else held))
     return depth
 
 
@@ -147,12 +150,12 @@ def object_of(pairs: Sequence[tuple[object, object]]) -> dict[object, object]:
 
 
 def _containers(values: Iterable[object]) -> list[dict[object, object] | list[object]]:
-    # Each of them once: in YAML one may stand in many places, and the ways to them double with each level.
-    found: dict[int, dict[object, object] | list[object]] = {}
-    for value in values:
-        if is_object(value) or is_list(value):
-            found[id(value)] = value
-    return list(found.values())
+    return [value for value in values if is_object(value) or is_list(value)]
+
+
+def _distinct_containers(values: Iterable[object]) -> list[dict[object, object] | list[object]]:
+    # Each of them once: the ways to one that stands in many places double with each level.
+    return list({id(value): value for value in _containers(values)}.values())
 
 
 def _integer(text: str) -> int | float:

@@ -57,9 +57,9 @@ def decode(type_: type[T], data: bytes, *, media_type: str = JSON) -> T:
     try:
         value: T = wire.read(data, type=type_)
     except _REFUSALS:
-        return decode_builtins(type_, wire.in_full(data))
+        return _decode_plain(type_, wire.in_full(data), is_tree=True)
     if wire.is_doubtful(data, value):
-        return decode_builtins(type_, wire.in_full(data))
+        return _decode_plain(type_, wire.in_full(data), is_tree=True)
     return _consistent(value)
 
 
@@ -85,20 +85,7 @@ def decode_builtins(type_: type[T], parsed: object) -> T:
     InconsistentError
         Every field is in order, and together they break a rule that no schema can state.
     """
-    from burntally.model._walker import walk  # as slow to load as the rest of the border, and often not needed
-
-    if _parse.depth_of(parsed) > _parse.DEEPEST:
-        raise _parse.too_deep()
-    plain, found = walk(type_, parsed)
-    if found:
-        from burntally.model._part_checks import violations_in_parts
-
-        raise ContractError([*found, *violations_in_parts(type_, plain, found)])
-    try:
-        value = msgspec.convert(plain, type_)
-    except msgspec.ValidationError as error:
-        raise _parse.one_violation(str(error)) from error
-    return _consistent(value)
+    return _decode_plain(type_, parsed, is_tree=False)
 
 
 def parse_json(data: bytes) -> object:
@@ -153,6 +140,23 @@ def encode(value: object, *, media_type: str = JSON) -> bytes:
         if report.violations:
             raise UncomputableError(report.violations)
     return data
+
+
+def _decode_plain(type_: type[T], parsed: object, *, is_tree: bool) -> T:
+    from burntally.model._walker import walk  # as slow to load as the rest of the border, and often not needed
+
+    if _parse.depth_of(parsed, is_tree=is_tree) > _parse.DEEPEST:
+        raise _parse.too_deep()
+    plain, found = walk(type_, parsed)
+    if found:
+        from burntally.model._part_checks import violations_in_parts
+
+        raise ContractError([*found, *violations_in_parts(type_, plain, found)])
+    try:
+        value = msgspec.convert(plain, type_)
+    except msgspec.ValidationError as error:
+        raise _parse.one_violation(str(error)) from error
+    return _consistent(value)
 
 
 class _Wire(NamedTuple):
