@@ -39,6 +39,12 @@ def test_a_harmful_body_is_refused_for_what_is_wrong_with_it(case: dict[str, Any
     assert all(POINTER.match(pointer) for pointer in pointers)
 
 
+@pytest.mark.parametrize("case", REFUSED, ids=lambda case: case["body"])
+def test_a_refusal_tells_what_was_expected_in_each_place(case: dict[str, Any], client: TestClient[Any]) -> None:
+    errors = ask(client, case).json()["errors"]
+    assert [error for error in errors if not error.get("expected")] == []
+
+
 @pytest.mark.parametrize("case", ANSWERED, ids=lambda case: case["body"])
 def test_an_odd_body_that_breaks_nothing_is_answered(case: dict[str, Any], client: TestClient[Any]) -> None:
     assert ask(client, case).status_code == 200

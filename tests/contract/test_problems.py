@@ -92,6 +92,19 @@ ROWS: list[tuple[str, str, dict[str, str], bytes | None, int, str, list[str]]] =
         [],
     ),
     ("POST", "/v1/budgets", JSON | {"Content-Encoding": "gzip"}, b"{}", 415, "unsupported-media-type", []),
+    ("POST", "/v1/budgets", JSON | {"Content-Encoding": "identity, br"}, b"{}", 415, "unsupported-media-type", []),
+    ("POST", "/v1/budgets", {"Content-Type": ";;=;"}, b"{}", 415, "unsupported-media-type", []),
+    ("POST", "/v1/budgets", {"Content-Type": "application/json, text/plain"}, b"{}", 415, "unsupported-media-type", []),
+    ("POST", "/v1/budgets", {"Content-Type": "application/problem+json"}, b"{}", 415, "unsupported-media-type", []),
+    (
+        "POST",
+        "/v1/budgets",
+        {"Content-Type": "application/msgpack; charset=latin-1"},
+        b"\x80",
+        415,
+        "unsupported-media-type",
+        [],
+    ),
     ("POST", "/v1/budgets", JSON, b" " * (MAX_BODY_BYTES + 1), 413, "payload-too-large", []),
     # bodies that cannot be read
     ("POST", "/v1/budgets", JSON, b"", 400, "invalid-request", [""]),
@@ -129,6 +142,8 @@ ROWS: list[tuple[str, str, dict[str, str], bytes | None, int, str, list[str]]] =
     ("GET", "/v1/bodies?a=1&b=2", {}, None, 400, "invalid-request", ["", ""]),
     ("GET", "/v1/bodies/a%00b", {}, None, 400, "invalid-request", ["/name"]),
     ("GET", "/v1/bodies/" + "a" * 65, {}, None, 400, "invalid-request", ["/name"]),
+    ("GET", "/v1/bodies/%FF", {}, None, 400, "invalid-request", ["/name"]),
+    ("GET", "/v1/bodies?%FF=%FE", {}, None, 400, "invalid-request", [""]),
     # fields that do not fit together
     (
         "POST",
@@ -184,6 +199,14 @@ def test_a_refusal_says_what_is_wrong(probe: Probe, client: Client) -> None:
     assert told == (probe.status, probe.status, probe.code, probe.pointers)
     assert response.headers["content-type"] == "application/problem+json"
     assert (problem.type, problem.title) == (f"/problems/{probe.code}", PROBLEMS[probe.code].title)
+
+
+@pytest.mark.parametrize("probe", PROBES, ids=[f"{index}-{probe.code}" for index, probe in enumerate(PROBES)])
+def test_a_refusal_says_in_words_what_to_do_and_where_to_read_on(probe: Probe, client: Client) -> None:
+    problem = client.request(probe.method, probe.path, headers=probe.headers, content=probe.body).json()
+    assert problem["detail"]
+    assert all(error["message"] for error in problem["errors"])
+    assert client.get(problem["type"]).json()["title"] == problem["title"]
 
 
 def test_the_detail_of_one_violation_names_its_field(client: Client) -> None:

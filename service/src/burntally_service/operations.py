@@ -327,4 +327,5 @@ def _without_end(error: Exception) -> UncomputableError:
     # It is logged all the same: of a sane request it would be a fault of ours.
     _LOG.warning("arithmetic failed", exc_info=error)
     message = "somewhere on the way a quantity vanishes or grows beyond all bounds, so there is no finite answer"
-    return UncomputableError([Violation(pointer="", message=message)])
+    wanted = "masses and thrusts above zero by more than a rounding, so that each burn ends at some speed"
+    return UncomputableError([Violation(pointer="", message=message, expected=wanted)])

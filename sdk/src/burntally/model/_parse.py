@@ -101,7 +101,9 @@ def json_values(data: bytes) -> object:
             parse_constant=_unbounded,
         )
     except UnicodeDecodeError as error:
-        raise one_violation(f"the body is not UTF-8, at byte {error.start}") from error
+        raise one_violation(
+            f"the body is not UTF-8, at byte {error.start}", expected="a JSON document in UTF-8"
+        ) from error
     except json.JSONDecodeError as error:
         place = f"line {error.lineno}, column {error.colno}"
         raise one_violation(f"the body is not JSON: {error.msg} ({place})", expected="a JSON document") from error

@@ -24,7 +24,8 @@ class Report:
         """Add a violation, and stop the reading where there are too many."""
         self.violations.append(violation)
         if len(self.violations) >= _MOST:
-            self.violations.append(Violation(pointer="", message=f"reading stopped after {_MOST} violations"))
+            message = f"reading stopped after {_MOST} violations"
+            self.violations.append(Violation(pointer="", message=message, expected="fewer of them"))
             raise ReportFullError
 
 

@@ -23,6 +23,8 @@ T = TypeVar("T")
 JSON: Final = "application/json"
 MSGPACK: Final = "application/msgpack"
 
+_PACKED: Final = "a MessagePack document, with keys that are text"
+
 _REFUSALS: Final = (msgspec.MsgspecError, RecursionError, ValueError, OverflowError, TypeError)
 """What msgspec raises on a body: beside its own errors Python's, for numbers too long and keys that are no text."""
 
@@ -214,20 +216,20 @@ def _json_in_full(data: bytes) -> object:
 
 def _msgpack_in_full(data: bytes) -> object:
     if not data:
-        raise _parse.one_violation("the body is empty", expected="a MessagePack document")
+        raise _parse.one_violation("the body is empty", expected=_PACKED)
     try:
         parsed = msgspec.msgpack.decode(data)
         is_doubtful = len(data) != len(msgspec.msgpack.encode(parsed))
     except RecursionError as error:
         raise _parse.too_deep() from error
     except _REFUSALS as error:
-        raise _parse.one_violation(f"the body is not MessagePack: {error}") from error
+        raise _parse.one_violation(f"the body is not MessagePack: {error}", expected=_PACKED) from error
     return msgpack_values(data) if is_doubtful else parsed
 
 
 def _tell_non_finite(value: object, trail: Trail) -> None:
     if isinstance(value, float) and value - value != 0.0:
-        tell(trail, "is not a finite number", read=value)
+        tell(trail, "is not a finite number", read=value, expected="a finite result")
     elif _parse.is_object(value):
         for key, inner in value.items():
             _tell_non_finite(inner, (trail, key))

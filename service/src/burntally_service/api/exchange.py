@@ -26,6 +26,7 @@ AnyRequest = Request[Any, Any, Any]
 VERSION: Final = version("burntally-service")
 _NOT_MODIFIED: Final = 304
 _TAG_BYTES: Final = 16
+_NO_QUERY: Final = "a path without a query: what an operation is asked stands in its body or path"
 _ANY_TAG: Final = "*"
 _TAG: Final = re.compile(r'"[^"]*"')
 
@@ -121,10 +122,10 @@ def _body_media_type(headers: dict[bytes, str]) -> str:
 def _unknown_parameters(request: AnyRequest) -> ContractError:
     return ContractError(
         [
-            Violation(pointer="", message=f"there is no query parameter {name!r}", read=name)
+            Violation(pointer="", message=f"there is no query parameter {name!r}", read=name, expected=_NO_QUERY)
             for name in request.query_params
         ]
-        or [Violation(pointer="", message="there are no query parameters")]
+        or [Violation(pointer="", message="there are no query parameters", expected=_NO_QUERY)]
     )
 
 

@@ -262,7 +262,8 @@ def _size_by_period(r_peri: float, period: float, body: Body, pointer: str) -> S
     r_apo = opposite_apsis(semi_major_axis(body.mu, period), r_peri)
     if not r_peri <= r_apo < math.inf:
         message = "no orbit with this period has its periapsis so high"
-        raise UncomputableError([Violation(pointer=pointer, message=message, read=f"{period:g} s")])
+        wanted = "a longer period, or a lower periapsis"
+        raise UncomputableError([Violation(pointer=pointer, message=message, read=f"{period:g} s", expected=wanted)])
     return Size(r_peri=r_peri, r_apo=r_apo)
 
 
@@ -271,5 +272,6 @@ def _radius(altitude: float, body: Body, pointer: str) -> float:
     r = body.radius_at(altitude)
     if not r > 0.0:
         message = f"this is at or beyond the centre of {body.name}, whose radius is {body.radius:g} m"
-        raise UncomputableError([Violation(pointer=pointer, message=message, read=f"{altitude:g} m")])
+        wanted = f"above {-body.radius:g} m"
+        raise UncomputableError([Violation(pointer=pointer, message=message, read=f"{altitude:g} m", expected=wanted)])
     return r
