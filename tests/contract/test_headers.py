@@ -21,6 +21,7 @@ from burntally_service.api.exchange import entity_tag
 from burntally_service.api.metrics import Metrics
 from burntally_service.api.routes import operation_routes
 from burntally_service.api.settings import Settings
+from burntally_service.api.turns import Turns
 from burntally_service.operations import OPERATIONS, Retirement, answer
 
 Client = TestClient[Any]
@@ -179,7 +180,9 @@ ANNOUNCED = msgspec.structs.replace(
 def fixture_routes(monkeypatch: pytest.MonkeyPatch) -> Iterator[Client]:
     monkeypatch.setattr(operations, "OPERATIONS", dict(OPERATIONS) | {row.id: row for row in (GOING, ANNOUNCED)})
     settings = Settings()
-    app = Litestar(operation_routes([GOING, ANNOUNCED], settings), openapi_config=None, logging_config=None)
+    app = Litestar(
+        operation_routes([GOING, ANNOUNCED], settings, Turns(settings)), openapi_config=None, logging_config=None
+    )
     with TestClient(Edge(app, settings=settings, metrics=Metrics())) as client:
         yield client
 
