@@ -1,10 +1,13 @@
 """The image and the compose file give the service no more than it needs."""
 
+import tomllib
 from pathlib import Path
 from typing import Any
 
 import pytest
 from ruamel.yaml import YAML
+
+from burntally_service.api.settings import Settings
 
 
 @pytest.fixture
@@ -55,3 +58,16 @@ def test_one_named_volume_holds_all_that_lasts(compose: dict[str, Any], service:
 
 def test_only_this_machine_reaches_the_port(service: dict[str, Any]) -> None:
     assert all(port.startswith("127.0.0.1:") for port in service["ports"])
+
+
+def test_a_stop_waits_longer_than_the_service_drains(service: dict[str, Any]) -> None:
+    assert float(service["stop_grace_period"].removesuffix("s")) > Settings().drain_timeout_s
+
+
+def test_compose_runs_the_version_that_is_built(root: Path, service: dict[str, Any]) -> None:
+    version = tomllib.loads((root / "service/pyproject.toml").read_text(encoding="utf-8"))["project"]["version"]
+    assert service["image"] == f"burntally:{version}"
+
+
+def test_the_image_cannot_install_anything(image: str) -> None:
+    assert "python3 -m venv --without-pip /opt/burntally" in image

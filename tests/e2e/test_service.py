@@ -1,72 +1,83 @@
-"""A real server: it starts, gets ready, answers, and stops when it is asked to."""
+"""A server as a caller finds it: its pages, and the bytes that it answers. It may run anywhere: see `conftest.py`."""
 
 import http.client
-import os
-import re
-import signal
 import subprocess
 import sys
-import time
 from collections.abc import Iterator
+from pathlib import Path
+from urllib.parse import urlsplit
 
 import pytest
 
+from burntally.client import Answer, Client, connect, errors
 from burntally_service.api.examples import example_bytes
-from burntally_service.operations import answer
+from burntally_service.operations import OPERATIONS
 
-START_S = 30.0
-ADDRESS = re.compile(r"running on http://127\.0\.0\.1:(\d+)")
-SERVE = "from burntally_service.api.serve import serve; serve(port=0)"
-
-
-@pytest.fixture
-def process() -> Iterator[subprocess.Popen[str]]:
-    environment = {**os.environ, "PYTHONUNBUFFERED": "1"}
-    with subprocess.Popen(
-        [sys.executable, "-c", SERVE], stderr=subprocess.PIPE, stdout=subprocess.DEVNULL, text=True, env=environment
-    ) as process:
-        try:
-            yield process
-        finally:
-            process.kill()
+ROOT = Path(__file__).parents[2]
+NAMED = {"get_body": "moon", "get_rules": "esa-2012"}
+WAIT_S = 30.0
 
 
 @pytest.fixture
-def connection(process: subprocess.Popen[str]) -> Iterator[http.client.HTTPConnection]:
-    connection = http.client.HTTPConnection("127.0.0.1", port_of(process), timeout=START_S)
+def connection(url: str) -> Iterator[http.client.HTTPConnection]:
+    connection = http.client.HTTPConnection(urlsplit(url).netloc, timeout=WAIT_S)
     yield connection
     connection.close()
 
 
-def port_of(process: subprocess.Popen[str]) -> int:
-    """Read the port from the log; the line comes once the server is listening."""
-    assert process.stderr is not None
-    for line in process.stderr:
-        if found := ADDRESS.search(line):
-            return int(found[1])
-    raise AssertionError("the server ended without listening")
+@pytest.fixture(scope="module")
+def over_http(url: str) -> Iterator[Client]:
+    with connect(url) as client:
+        yield client
 
 
-def ask(connection: http.client.HTTPConnection, method: str, path: str, body: bytes | None = None) -> tuple[int, bytes]:
-    connection.request(method, path, body=body, headers={"Content-Type": "application/json"} if body else {})
+def ask(connection: http.client.HTTPConnection, method: str, path: str) -> tuple[int, bytes]:
+    connection.request(method, path)
     response = connection.getresponse()
     return response.status, response.read()
 
 
-def test_a_server_is_ready_once_it_listens(connection: http.client.HTTPConnection) -> None:
+def test_it_is_alive(connection: http.client.HTTPConnection) -> None:
+    assert ask(connection, "GET", "/healthz")[0] == 200
+
+
+def test_it_is_ready_once_it_listens(connection: http.client.HTTPConnection) -> None:
     assert ask(connection, "GET", "/readyz") == (200, b'{"status":"ready"}')
 
 
-def test_a_server_answers_what_is_answered_in_process(connection: http.client.HTTPConnection) -> None:
-    body = example_bytes("create_budget")
-    assert ask(connection, "POST", "/v1/budgets", body) == (200, answer("create_budget", body))
+def test_it_serves_the_contract_that_is_published(connection: http.client.HTTPConnection) -> None:
+    published = (ROOT / "openapi/burntally.openapi.json").read_bytes()
+    assert ask(connection, "GET", "/openapi.json") == (200, published)
 
 
-def test_a_server_that_is_told_to_stop_has_not_failed(
-    process: subprocess.Popen[str], connection: http.client.HTTPConnection
-) -> None:
-    ask(connection, "GET", "/healthz")
-    asked_at = time.monotonic()
-    process.send_signal(signal.SIGTERM)
-    assert process.wait(timeout=10) == 0
-    assert time.monotonic() - asked_at < 10
+def test_it_has_a_page_to_read(connection: http.client.HTTPConnection) -> None:
+    assert ask(connection, "GET", "/docs")[0] == 200
+
+
+@pytest.mark.parametrize("operation_id", sorted(OPERATIONS))
+def test_it_answers_what_is_answered_in_process(operation_id: str, over_http: Client) -> None:
+    def answered(client: Client) -> Answer:
+        return client.call(operation_id, example_bytes(operation_id) or None, name=NAMED.get(operation_id))
+
+    with connect() as client:
+        assert answered(over_http).body == answered(client).body
+
+
+def test_it_refuses_as_it_does_in_process(over_http: Client) -> None:
+    with pytest.raises(errors.InvalidRequest) as refused:
+        over_http.budget({"format": 1})
+    assert {violation.pointer for violation in refused.value.violations} == {"/mission", "/vehicle"}
+
+
+def test_a_command_that_asks_it_prints_what_a_command_without_it_prints(url: str) -> None:
+    def printed(*options: str) -> str:
+        command: list[str | Path] = [
+            Path(sys.executable).with_name("burntally"),
+            "check",
+            *options,
+            "sdk/examples/closes.toml",
+        ]
+        done = subprocess.run(command, cwd=ROOT, check=True, capture_output=True, text=True)
+        return done.stdout
+
+    assert printed("--server", url) == printed()
