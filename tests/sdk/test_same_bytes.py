@@ -23,8 +23,9 @@ Way = Callable[..., Answer]
 class Loop(httpx2.BaseTransport):
     """Reaches the application from a synchronous client: the library's own transport to it is asynchronous only."""
 
-    def __init__(self, app: Any) -> None:
+    def __init__(self, app: Any, runner: asyncio.Runner) -> None:
         self._transport = httpx2.ASGITransport(app)
+        self._runner = runner
 
     def handle_request(self, request: httpx2.Request) -> httpx2.Response:
         async def send() -> httpx2.Response:
@@ -33,13 +34,22 @@ class Loop(httpx2.BaseTransport):
                     request.method, request.url, content=request.read(), headers=request.headers
                 )
 
-        reply = asyncio.run(send())
+        reply = self._runner.run(send())
         return httpx2.Response(reply.status_code, headers=reply.headers, content=reply.content)
 
 
 @pytest.fixture(scope="module")
-def app() -> Any:
-    return create_app()
+def runner() -> Iterator[asyncio.Runner]:
+    """One event loop for all requests, as a server has it: its workers live in it."""
+    with asyncio.Runner() as runner:
+        yield runner
+
+
+@pytest.fixture(scope="module")
+def app(runner: asyncio.Runner) -> Iterator[Any]:
+    app = create_app()
+    yield app
+    runner.run(app.app.state.turns.close())
 
 
 @pytest.fixture(scope="module")
@@ -49,17 +59,17 @@ def inprocess() -> Iterator[Way]:
 
 
 @pytest.fixture(scope="module")
-def over_http(app: Any) -> Iterator[Way]:
-    with connect(URL, transport=Loop(app), tries=1) as client:
+def over_http(app: Any, runner: asyncio.Runner) -> Iterator[Way]:
+    with connect(URL, transport=Loop(app, runner), tries=1) as client:
         yield client.call
 
 
-def call_async(app: Any, *args: Any, **options: Any) -> Answer:
+def call_async(app: Any, runner: asyncio.Runner, /, *args: Any, **options: Any) -> Answer:
     async def call() -> Answer:
         async with connect_async(URL, transport=httpx2.ASGITransport(app), tries=1) as client:
             return await client.call(*args, **options)
 
-    return asyncio.run(call())
+    return runner.run(call())
 
 
 def examples() -> list[Any]:
@@ -90,9 +100,11 @@ def test_http_gives_the_bytes_of_the_installed_service(
 
 
 @pytest.mark.parametrize("operation,value", examples())
-def test_the_asynchronous_client_gives_them_too(operation: str, value: Any, inprocess: Way, app: Any) -> None:
+def test_the_asynchronous_client_gives_them_too(
+    operation: str, value: Any, inprocess: Way, app: Any, runner: asyncio.Runner
+) -> None:
     args, options = arguments(operation, value)
-    assert call_async(app, *args, **options).body == inprocess(*args, **options).body
+    assert call_async(app, runner, *args, **options).body == inprocess(*args, **options).body
 
 
 METHODS = {
