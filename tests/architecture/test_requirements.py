@@ -5,7 +5,13 @@ from pathlib import Path
 
 import pytest
 
-FILES = ["requirements.txt", "requirements-dev.txt", "requirements-referee.txt", "requirements-clients.txt"]
+FILES = [
+    "requirements.txt",
+    "requirements-dev.txt",
+    "requirements-referee.txt",
+    "requirements-release.txt",
+    "requirements-clients.txt",
+]
 
 
 def _pins(path: Path) -> dict[str, str]:

@@ -30,3 +30,11 @@ def test_imports_run_downhill(passes: Callable[..., None]) -> None:
 
 def test_the_image_file_has_no_finding(passes: Callable[..., None]) -> None:
     passes("hadolint", "docker/Dockerfile")
+
+
+def test_the_compose_file_fits_its_schema(passes: Callable[..., None]) -> None:
+    passes("check-jsonschema", "--builtin-schema", "vendor.compose-spec", "docker/compose.yaml")
+
+
+def test_the_scripts_have_no_finding(passes: Callable[..., None]) -> None:
+    passes("shellcheck", ".ci/run", ".ci/release", "docker/build")

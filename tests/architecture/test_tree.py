@@ -18,6 +18,7 @@ TOP = {
     "requirements-clients.txt",
     "requirements-dev.txt",
     "requirements-referee.txt",
+    "requirements-release.txt",
     "requirements.txt",
     "sdk",
     "service",

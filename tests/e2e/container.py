@@ -5,7 +5,9 @@ They have a network of their own with nothing but loopback in it. Who wants to a
 
 import ctypes
 import http.client
+import importlib.metadata
 import os
+import re
 import shutil
 import subprocess
 import time
@@ -43,6 +45,20 @@ def install_runner() -> None:
     options = ["-o", "DPkg::Lock::Timeout=300", "-q", "-y", "--no-install-recommends"]
     subprocess.run(["apt-get", "update", "-q"], check=True, capture_output=True)
     subprocess.run(["apt-get", "install", *options, "podman", "runc"], check=True, capture_output=True)
+
+
+def delivered() -> dict[str, str]:
+    """Give name and version of every distribution that an installation on this system holds."""
+    text = (ROOT / "requirements.txt").read_text(encoding="utf-8")
+    pins = re.findall(r"^([\w.-]+)==(\S+)(?: ; (.+?))? \\$", text, flags=re.MULTILINE)
+    elsewhere = re.compile(r"sys_platform == '(win32|emscripten)'|python_full_version >= '3.12'")
+    own = {name: importlib.metadata.version(name) for name in ("burntally", "burntally-service")}
+    return own | {name: version for name, version, marker in pins if not elsewhere.search(marker)}
+
+
+def plain(name: str) -> str:
+    """Give a distribution's name as requirements spell it."""
+    return re.sub(r"[._]", "-", name).lower()
 
 
 def podman(*arguments: str | Path) -> str:
