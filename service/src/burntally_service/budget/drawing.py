@@ -208,6 +208,8 @@ def _newly_started(design: Design, lowered: Lowered, lines: list[Line]) -> tuple
 
     What leaves together starts the first branch that is of any part of it.
     """
+    if None not in lowered.branches:
+        return None
     for place, end in _separations(lines):
         group = {lowered.stages[line.part].name for line in lines[place:end]}
         for index, branch in enumerate(design.mission.branches):

@@ -118,6 +118,7 @@ def _leg_book(drawn: Drawn, leg: int, row: PlannedLeg, lines: list[Line]) -> Leg
     """Book of one leg."""
     books = drawn.books
     epoch = drawn.design.mission.epoch
+    gravity = local_gravity(drawn, row)
     began, ended = books.clock_before[leg], books.clock_after[leg]
     by_fraction, by_floor, by_fixed = books.by_fraction[leg], books.by_floor[leg], books.by_fixed[leg]
     return LegBook(
@@ -145,7 +146,7 @@ def _leg_book(drawn: Drawn, leg: int, row: PlannedLeg, lines: list[Line]) -> Leg
         mass_after=books.mass_after[leg],
         manoeuvres=row.plan.told_manoeuvres(began),
         alternatives=list(row.plan.alternatives),
-        burns=[_burn(drawn, row, line) for line in lines if line.kind == rows.LINE_BURN],
+        burns=[_burn(drawn, row, line, gravity) for line in lines if line.kind == rows.LINE_BURN],
         events=[event for line in lines if (event := _event(drawn, line)) is not None],
     )
 
@@ -191,13 +192,12 @@ def local_gravity(drawn: Drawn, row: PlannedLeg) -> float | None:
     return body.mu / (r * r)
 
 
-def _burn(drawn: Drawn, row: PlannedLeg, line: Line) -> Burn:
+def _burn(drawn: Drawn, row: PlannedLeg, line: Line, gravity: float | None) -> Burn:
     """One burn; its thrust and flow are those of the engines that its line says were lit."""
     stage = drawn.lowered.tables.burners[line.part].stage
     lit = drawn.lit(stage, line.mask)
     thrust = lit.thrust
     after = line.mass - line.kg
-    gravity = local_gravity(drawn, row)
     return Burn(
         stage=drawn.part_name(stage),
         engines=list(lit.names),
