@@ -93,7 +93,7 @@ def _is_field_of(name: str, schema: Schema) -> bool:
 
 def _with_named_unions(schemas: dict[str, Schema], unions: Mapping[str, object]) -> dict[str, Schema]:
     """Make components of the unions that have a name, and refer to them."""
-    named = {}
+    named: dict[frozenset[str], str] = {}
     for name, union in unions.items():
         members = [member.__name__ for member in get_args(union)]
         for suffix in ("", ANSWER_SUFFIX):
@@ -101,7 +101,8 @@ def _with_named_unions(schemas: dict[str, Schema], unions: Mapping[str, object])
     components: dict[str, Schema] = {}
 
     def refer(node: Schema) -> Schema:
-        name = named.get(frozenset(option.get("$ref", "") for option in node.get("oneOf", ())))
+        options: list[Schema] = node.get("oneOf", [])
+        name = named.get(frozenset(str(option.get("$ref")) for option in options))
         if name is None:
             return node
         union = {key: node.pop(key) for key in ("discriminator", "oneOf")}
