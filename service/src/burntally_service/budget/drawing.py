@@ -3,6 +3,7 @@
 import itertools
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
+from typing import Any
 
 from msgspec import Struct
 
@@ -197,10 +198,9 @@ def _tallied(lowered: Lowered) -> tuple[rows.Books, list[Line]]:
     return books, [_line(books.lines, line * rows.LINE_WIDTH) for line in range(written)]
 
 
-def _line(cells: list[float], start: int) -> Line:
-    """Read one line out of the flat ledger."""
-    kind, leg, part, purpose, delta_v, kg, mass, time, mask, spare = cells[start : start + rows.LINE_WIDTH]
-    return Line(int(kind), int(leg), int(part), int(purpose), delta_v, kg, mass, time, int(mask), spare)
+def _line(cells: list[Any], start: int) -> Line:
+    """Read one line out of the flat ledger, in which whole numbers are ints."""
+    return Line(*cells[start : start + rows.LINE_WIDTH])
 
 
 def _newly_started(design: Design, lowered: Lowered, lines: list[Line]) -> tuple[int, Handoff] | None:

@@ -220,6 +220,8 @@ def _event(drawn: Drawn, line: Line) -> Event | None:
     stages = len(drawn.lowered.stages)
     tables = drawn.lowered.tables
     kind: _EventKind
+    if line.kind == rows.LINE_BURN:
+        return None
     if line.kind == rows.LINE_IGNITION:
         stage = drawn.lowered.engines[line.part][0]
         kind, part = "ignition", f"{drawn.part_name(stage)}/{drawn.engine_name(line.part)}"

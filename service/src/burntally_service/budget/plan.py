@@ -21,6 +21,8 @@ By identity, since a leg holds lists and cannot be hashed; and it serves, since 
 shares all other legs, and its copies are drawn up many times for remedies.
 """
 
+_QUIET = (Ascend, Coast)
+
 OPEN_ACCOUNT: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
 
@@ -132,10 +134,11 @@ def plan_branch(
     for index, leg in enumerate(of.legs if of else mission.legs):
         pointer = f"{base}/legs/{index}"
         key = (id(leg), location, elapsed, mission.epoch)
-        if key not in memo:
+        known = memo.get(key)
+        if known is None:
             clock = Clock(elapsed=elapsed, epoch=mission.epoch)
-            memo[key] = leg, plan_leg(leg, location, bodies=bodies, clock=clock, pointer=pointer)
-        plan = memo[key][1]
+            known = memo[key] = leg, plan_leg(leg, location, bodies=bodies, clock=clock, pointer=pointer)
+        plan = known[1]
         planned.append(_planned_leg(plan, rules, leg=leg, at=(index, pointer), start=(location, elapsed)))
         location, elapsed = plan.end, elapsed + plan.duration
     return BranchPlan(
@@ -174,4 +177,4 @@ def _planned_leg(
 
 def is_quiet(leg: Leg) -> bool:
     """Tell whether handing over within a leg is not worth telling: expected in an ascent, of no weight in upkeep."""
-    return isinstance(leg, Ascend | Coast)
+    return isinstance(leg, _QUIET)

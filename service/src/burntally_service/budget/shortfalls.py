@@ -1,5 +1,6 @@
 """Shortfalls: what cannot be paid, released, docked or started, with the field whose change would mend it."""
 
+import math
 from collections.abc import Iterator
 
 from burntally.model.budget import Finding
@@ -14,6 +15,10 @@ __all__ = ["shortfalls"]
 
 _ORBIT_TOLERANCES = {"periapsis": 1.0, "apoapsis": 1.0, "period": 1e-3, "inclination": 1e-6, "raan": 1e-6}
 """How far orbits may lie apart and still be one [m, s, deg]."""
+
+
+_EXCHANGED = frozenset({rows.LINE_ABSENT, rows.LINE_RELEASE, rows.LINE_HANDED})
+"""Lines of what should have left, and may have been too little or not there."""
 
 
 def shortfalls(drawn: Drawn) -> Iterator[Finding]:
@@ -184,6 +189,8 @@ def _element(orbit: OrbitLocation, name: str) -> float | None:
 def _exchanges(drawn: Drawn) -> Iterator[Finding]:
     """Legs that name a part that is not aboard, or release more than there is."""
     for line in drawn.lines:
+        if line.kind not in _EXCHANGED:
+            continue
         branch, row = drawn.lowered.legs[line.leg]
         if row is None:
             continue
@@ -216,9 +223,7 @@ def _exchanges(drawn: Drawn) -> Iterator[Finding]:
 
 def _is_short(line: Line) -> bool:
     """Tell whether a release asked for more than there was."""
-    if line.kind not in {rows.LINE_RELEASE, rows.LINE_HANDED} or line.delta_v == float("inf"):
-        return False
-    return line.kg < line.delta_v * (1.0 - DRY_FRACTION)
+    return line.delta_v != math.inf and line.kg < line.delta_v * (1.0 - DRY_FRACTION)
 
 
 def _boiled_dry(drawn: Drawn) -> Iterator[Finding]:

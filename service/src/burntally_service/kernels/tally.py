@@ -201,9 +201,9 @@ def _coast(tables: Tables, books: Books, leg: int, duration: float) -> None:
         if books.where[row.stage] != branch or books.usable[load] <= 0.0:
             continue
         kg = min(books.usable[load], row.boiloff_per_day * (duration / DAY))
-        dried = 1.0 if kg == books.usable[load] else 0.0
+        dried = 1 if kg == books.usable[load] else 0
         mass, clock = books.branch_mass[branch], books.branch_clock[branch]
-        write_line(books, (LINE_BOILED, leg, load), (0.0, 0.0, kg, mass, clock, dried, 0.0))
+        write_line(books, (LINE_BOILED, leg, load), (0, 0.0, kg, mass, clock, dried, 0.0))
         books.usable[load] -= kg
         if books.usable[load] <= books.dry_mark[load]:
             # The engines that it fed are out, so the flow that is kept for the stage no longer holds.

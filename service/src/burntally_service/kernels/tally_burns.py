@@ -72,9 +72,7 @@ def _ignite(tables: Tables, books: Books, leg: int, burner: int, mask: int) -> N
             if engines[engine].loss_per_ignition > 0.0:
                 lost = _lose(tables, books, engine, row.stage)
                 books.branch_mass[branch] = mass - lost
-            write_line(
-                books, (LINE_IGNITION, leg, engine), (0.0, 0.0, lost, mass, books.branch_clock[branch], 0.0, 0.0)
-            )
+            write_line(books, (LINE_IGNITION, leg, engine), (0, 0.0, lost, mass, books.branch_clock[branch], 0, 0.0))
 
 
 def _lose(tables: Tables, books: Books, engine: int, stage: int) -> float:

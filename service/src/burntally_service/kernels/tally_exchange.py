@@ -74,7 +74,7 @@ def _tell(tables: Tables, books: Books, head: tuple[int, int, int], amounts: tup
     """Write a line with a mass that was wanted, or was there before, and the mass that moves."""
     branch = tables.legs[head[1]].branch
     mass, clock = books.branch_mass[branch], books.branch_clock[branch]
-    write_line(books, head, (0.0, amounts[0], amounts[1], mass, clock, 0.0, 0.0))
+    write_line(books, head, (0, amounts[0], amounts[1], mass, clock, 0, 0.0))
 
 
 def _separate(tables: Tables, books: Books, leg: int, stage: int) -> None:

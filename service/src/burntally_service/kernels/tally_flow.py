@@ -24,7 +24,9 @@ from burntally_service.kernels.tally_rows import (
 __all__ = ["can_burn", "light_flow", "lit_mask", "spare_of", "wants_ignition", "write_line"]
 
 
-def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...]) -> None:
+def write_line(
+    books: Books, head: tuple[int, int, int], entry: tuple[int, float, float, float, float, int, float]
+) -> None:
     """Write one line of the ledger, if there is room; the count grows in any case, and so tells how much was lacking.
 
     Parameters
@@ -33,7 +35,7 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
         Changed: `lines`, `count`.
     head : tuple of int
         Kind of line, leg, part, [-].
-    entry : tuple of float
+    entry : tuple of int and float
         Purpose [-], delta-v [m/s], mass that moves [kg], mass before [kg], time [s], mask of the engines lit [-], mass
         that they could still burn together [kg].
 
@@ -51,7 +53,7 @@ def write_line(books: Books, head: tuple[int, int, int], entry: tuple[float, ...
     >>> from burntally_service.kernels.tally_books import blank_books
     >>> from burntally_service.kernels.tally_rows import NO_TABLES
     >>> books = blank_books(NO_TABLES, 1)
-    >>> write_line(books, (0, 0, 0), (0.0, 1.0, 2.0, 3.0, 4.0, 0.0, 0.0))
+    >>> write_line(books, (0, 0, 0), (0, 1.0, 2.0, 3.0, 4.0, 0, 0.0))
     >>> books.lines[4:8]
     [1.0, 2.0, 3.0, 4.0]
     """

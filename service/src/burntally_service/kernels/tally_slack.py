@@ -270,16 +270,20 @@ def _goes_on(tables: Tables, lines: list[float], walk: list[list[float]], start:
     last = walk[LAST]
     drawer = tables.burners[int(lines[start + PART])].stage
     reach = walk[REACH][drawer]
-    if last[0] != drawer or walk[STATE][drawer] != KNOWN or walk[TAIL][drawer] != 0.0:
+    if last[0] != drawer or walk[STATE][drawer] != KNOWN:
         return False
     if lines[start + MASK] != walk[MASKS][drawer] or lines[start + SPARE] < reach:
         return False
     mass = lines[start + MASS]
     reach *= mass / (mass - lines[start + KG])
     walk[REACH][drawer] = reach
-    last[1] = lines[start + LEG]
+    leg = lines[start + LEG]
+    if walk[TAIL][drawer] > 0.0:
+        walk[TAIL][drawer] = _tail_for(tables, walk, drawer, int(leg))
+    last[1] = leg
     last[2] = mass
     last[3] = reach
+    last[4] = walk[TAIL][drawer]
     return True
 
 

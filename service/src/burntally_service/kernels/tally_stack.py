@@ -125,7 +125,7 @@ def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
             books.branch_mass[target] += mass
         before = books.branch_mass[branch] + mass
         # The last cell tells what leaves together from what leaves right after it.
-        entry = (float(target), 0.0, mass, before, books.branch_clock[branch], 0.0, float(highest))
+        entry = (target, 0.0, mass, before, books.branch_clock[branch], 0, float(highest))
         write_line(books, (LINE_SEPARATION, leg, stage), entry)
         books.flow_of[stage] = -1
         row = tables.stages[stage]

@@ -27,6 +27,9 @@ from burntally_service.legs.transfer import plan_transfer
 __all__ = ["plan_leg"]
 
 
+_ENDING_ELSEWHERE = (Allowance, Land)
+
+
 def plan_leg(
     leg: Leg, start: Location | None, *, bodies: Mapping[str, Body], clock: Clock, pointer: str = ""
 ) -> LegPlan:
@@ -78,7 +81,7 @@ def _plan(leg: Leg, start: Location | None, bodies: Mapping[str, Body], clock: C
 
 def _entering(leg: Leg, start: Location | None, bodies: Mapping[str, Body]) -> PlanFinding | None:
     """Note that a leg goes on from an orbit whose periapsis is in the air."""
-    if not isinstance(leg, ChargedLeg) or isinstance(leg, Allowance | Land):
+    if not isinstance(leg, ChargedLeg) or isinstance(leg, _ENDING_ELSEWHERE):
         return None
     if not isinstance(start, OrbitLocation) or start.body is None:
         return None

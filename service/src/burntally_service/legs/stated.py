@@ -25,6 +25,9 @@ from burntally_service.legs.planned import LegPlan, PlannedManoeuvre
 __all__ = ["plan_stated"]
 
 
+_INTO_ORBIT = (Ascend, Transit, Transfer, Spiral)
+
+
 def plan_stated(
     leg: Leg, delta_v: float, start: Location | None, bodies: Mapping[str, Body], *, pointer: str = ""
 ) -> LegPlan:
@@ -60,7 +63,7 @@ def plan_stated(
 
 def _end(leg: Leg, start: Location | None, bodies: Mapping[str, Body], pointer: str) -> Location | None:
     """Where a leg ends."""
-    if isinstance(leg, Ascend | Transit | Transfer | Spiral):
+    if isinstance(leg, _INTO_ORBIT):
         return _reached(leg.to, start, bodies, f"{pointer}/to")
     if isinstance(leg, Rendezvous):
         return start if leg.to is None else _reached(leg.to, start, bodies, f"{pointer}/to")
