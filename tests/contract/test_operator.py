@@ -14,7 +14,7 @@ from burntally_service.api.app import create_app
 from burntally_service.api.callers import Networks
 from burntally_service.api.edge import Edge
 from burntally_service.api.examples import example_bytes
-from burntally_service.api.logs import JsonFormatter
+from burntally_service.api.logs import Lines
 from burntally_service.api.problems import PROBLEMS
 from burntally_service.api.settings import Settings
 from burntally_service.operations import OPERATIONS
@@ -37,8 +37,9 @@ def lines() -> Iterator[list[str]]:
 
     class Kept(logging.Handler):
         def emit(self, record: logging.LogRecord) -> None:
-            written.append(JsonFormatter().format(record))
+            written.append(form.format(record))
 
+    form = Lines(is_text=False)
     handler, logger = Kept(), logging.getLogger("burntally.api")
     level = logger.level
     logger.addHandler(handler)

@@ -9,10 +9,11 @@ from typing import Literal
 
 import pytest
 
-from burntally_service.api.logs import JsonFormatter, TextFormatter, configure_logging
+from burntally_service.api.logs import Lines, configure_logging, tell
 from burntally_service.api.settings import Settings
 
 HOSTILE = 'a\nb\r\x1b[31m"\x00\u2028\x85'
+JSON, TEXT = Lines(is_text=False), Lines(is_text=True)
 NAMES = ("", "burntally", "burntally.api", "uvicorn", "uvicorn.error")
 
 
@@ -69,7 +70,7 @@ def logged(
 
 
 def test_a_record_is_one_json_object() -> None:
-    line = JsonFormatter().format(record("request", status=200, parent_id=None))
+    line = JSON.format(record("request", status=200, parent_id=None))
     assert json.loads(line) == {
         "time": "1970-01-01T00:00:01.500000Z",
         "level": "info",
@@ -81,26 +82,26 @@ def test_a_record_is_one_json_object() -> None:
 
 
 def test_a_record_is_one_line_of_text() -> None:
-    line = TextFormatter().format(record("request", status=200, parent_id=None))
+    line = TEXT.format(record("request", status=200, parent_id=None))
     assert line == "1970-01-01T00:00:01.500+00:00 INFO     request status=200"
 
 
-@pytest.mark.parametrize("formatter", [JsonFormatter(), TextFormatter()], ids=["json", "text"])
+@pytest.mark.parametrize("handler", [JSON, TEXT], ids=["json", "text"])
 @pytest.mark.parametrize("made", [record(HOSTILE), record("e", field=HOSTILE)], ids=["event", "field"])
-def test_nothing_that_is_told_breaks_the_line(formatter: logging.Formatter, made: logging.LogRecord) -> None:
-    line = formatter.format(made)
-    assert len(line.splitlines()) <= 1 or isinstance(formatter, JsonFormatter)
+def test_nothing_that_is_told_breaks_the_line(handler: Lines, made: logging.LogRecord) -> None:
+    line = handler.format(made)
+    assert len(line.splitlines()) <= 1 or handler is JSON
     assert [character for character in "\n\r\x1b\x00" if character in line] == []
 
 
 def test_a_traceback_stays_in_its_json_line() -> None:
-    line = JsonFormatter().format(failed())
+    line = JSON.format(failed())
     assert "\n" not in line
     assert json.loads(line)["exception"].startswith("Traceback (most recent call last):\n")
 
 
 def test_a_traceback_follows_its_line_of_text() -> None:
-    assert TextFormatter().format(failed()).split("\n")[1] == "Traceback (most recent call last):"
+    assert TEXT.format(failed()).split("\n")[1] == "Traceback (most recent call last):"
 
 
 @pytest.mark.parametrize("form,stream", [("json", Terminal()), ("json", io.StringIO()), ("auto", io.StringIO())])
@@ -122,3 +123,31 @@ def test_a_person_gets_text(
 def test_what_is_below_the_level_is_not_logged(monkeypatch: pytest.MonkeyPatch) -> None:
     lines = logged(monkeypatch, io.StringIO(), level="warning").splitlines()
     assert [json.loads(line)["event"] for line in lines] == ["two"]
+
+
+@pytest.mark.parametrize("form", ["json", "text"])
+def test_what_comes_often_is_the_same_line(form: Literal["json", "text"], monkeypatch: pytest.MonkeyPatch) -> None:
+    stream = io.StringIO()
+    logged(monkeypatch, stream, form=form)
+    logger, fields = logging.getLogger("burntally.api"), {"status": 200, "parent_id": None, "client": HOSTILE}
+    monkeypatch.setattr("time.time", lambda: 1.5)
+    tell(logger, logging.INFO, event="request", fields=fields)
+    logger.info("request", extra={"fields": fields})
+    quick, slow = stream.getvalue().splitlines()[-2:] if form == "text" else stream.getvalue().split("\n")[-3:-1]
+    assert quick == slow
+
+
+def test_what_comes_often_is_bounded_by_the_level_too(monkeypatch: pytest.MonkeyPatch) -> None:
+    stream = io.StringIO()
+    logged(monkeypatch, stream, level="warning")
+    told = stream.getvalue()
+    tell(logging.getLogger("burntally.api"), logging.INFO, event="request", fields={})
+    assert stream.getvalue() == told
+
+
+def test_a_handler_of_others_is_told_what_comes_often(caplog: pytest.LogCaptureFixture) -> None:
+    with caplog.at_level(logging.INFO, logger="burntally.api"):
+        tell(logging.getLogger("burntally.api"), logging.INFO, event="request", fields={"status": 200})
+    assert [(record.getMessage(), vars(record)["fields"]) for record in caplog.records] == [
+        ("request", {"status": 200})
+    ]

@@ -14,6 +14,7 @@ from litestar.types import HTTPScope, Message, Receive, Scope, Send
 from burntally.model.errors import NotFoundError
 from burntally_service.api.callers import caller_of, scheme_of
 from burntally_service.api.guard import Guard
+from burntally_service.api.logs import tell
 from burntally_service.api.metrics import Metrics
 from burntally_service.api.problems import PROBLEM_JSON, PROBLEMS, Refusal, refusal_of
 from burntally_service.api.settings import Settings
@@ -113,8 +114,6 @@ class Edge:
         self._metrics.end(operation, visit.method, status=reply.status, duration_s=duration_s, problem=problem)
         is_quiet = operation in _QUIET and reply.status is not None and reply.status < _FIRST_FAILURE
         level = logging.DEBUG if is_quiet else logging.INFO
-        if not _LOG.isEnabledFor(level):
-            return
         fields = {
             "request_id": visit.identity.request_id,
             "trace_id": visit.identity.trace_id,
@@ -129,7 +128,7 @@ class Edge:
             "duration_ms": round(duration_s * 1e3, 3),
             "answer_bytes": reply.body_bytes,
         }
-        _LOG.log(level, "request", extra={"fields": fields})
+        tell(_LOG, level, event="request", fields=fields)
 
 
 class _Reply:
