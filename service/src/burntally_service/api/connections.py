@@ -8,8 +8,10 @@ refused for less than it costs to send.
 import asyncio
 import logging
 import os
+from collections import Counter
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, field
+from functools import cache
 from typing import Any, Final, Literal
 
 from uvicorn.config import Config
@@ -29,6 +31,7 @@ _LATE_S: Final = 1.0
 _LINGER_S: Final = 0.5
 _FETCH_TIMEOUT_S: Final = 8.0
 _TELL_EACH_S: Final = 1.0
+_NO_ID: Final = b"0" * 16
 
 _Waits = Literal["head", "body", "nothing"]
 
@@ -41,25 +44,29 @@ class Bounds:
     ----------
     settings
         The limits.
-    on_refusal
-        Told of each request that is refused here, by its method and the code of the problem.
+    on_refusals
+        Told of requests that were refused here: their method, the code of the problem, and how many they were.
     in_flight
         Requests that have arrived whole and are not answered yet.
     """
 
     settings: Settings
-    on_refusal: Callable[[str, str], None]
+    on_refusals: Callable[[str, str, int], None]
     in_flight: int = 0
-    refused: int = 0
-    told_at_s: float = 0.0
+    refused: Counter[tuple[str, str]] = field(default_factory=Counter)
 
-    def refuse(self, method: str, code: str, *, now_s: float) -> None:
-        """Count a refusal; the log is told of many at once, since it costs more than they do."""
-        self.on_refusal(method, code)
-        self.refused += 1
-        if now_s - self.told_at_s >= _TELL_EACH_S:
-            _LOG.warning("requests refused", extra={"fields": {"count": self.refused, "problem": code}})
-            self.refused, self.told_at_s = 0, now_s
+    def refuse(self, method: str, code: str, loop: asyncio.AbstractEventLoop) -> None:
+        """Count a refusal; metrics and log are told of many at once, since that costs more than to refuse."""
+        if not self.refused:
+            loop.call_later(_TELL_EACH_S, self.tell)
+        self.refused[method, code] += 1
+
+    def tell(self) -> None:
+        """Tell what was refused since it was told last."""
+        for (method, code), count in self.refused.items():
+            self.on_refusals(method, code, count)
+            _LOG.warning("requests refused", extra={"fields": {"count": count, "method": method, "problem": code}})
+        self.refused.clear()
 
 
 def bounded(bounds: Bounds) -> type[asyncio.Protocol]:
@@ -139,7 +146,7 @@ class _Connection(HttpToolsProtocol):
 
     def on_header(self, name: bytes, value: bytes) -> None:
         """Read a field of the head."""
-        self._grow(len(name) + len(value))
+        self._grow(len(name) + len(value) + len(b": \r\n"))
         super().on_header(name, value)
 
     def on_headers_complete(self) -> None:
@@ -244,23 +251,11 @@ class _Connection(HttpToolsProtocol):
 
     def _refuse(self, method: str, code: str, detail: str, cycle: RequestResponseCycle | None = None) -> None:
         """Write a refusal without asking the application."""
-        self.bounds.refuse(method, code, now_s=self.loop.time())
-        headers = {"Retry-After": "1"} if code == "overloaded" else {}
-        request_id = os.urandom(8).hex()
-        refusal = refusal_of(ProblemError(code, detail, headers=headers), request_id)
-        fields = {
-            **refusal.headers,
-            "Content-Type": PROBLEM_JSON,
-            "Content-Length": str(len(refusal.body)),
-            "X-Request-Id": request_id,
-            "X-Content-Type-Options": "nosniff",
-        }
-        if cycle is None or not cycle.keep_alive:
-            fields["Connection"] = "close"
-        lines = [b"%s: %s\r\n" % field for field in self.server_state.default_headers]
-        lines += [f"{name.lower()}: {value}\r\n".encode("latin-1") for name, value in fields.items()]
-        body = b"" if method == "HEAD" else refusal.body
-        self.transport.write(b"".join((STATUS_LINE[refusal.status], *lines, b"\r\n", body)))
+        self.bounds.refuse(method, code, self.loop)
+        head, body = _refusal(code, detail, closes=cycle is None or not cycle.keep_alive)
+        fields = b"".join(b"%s: %s\r\n" % field for field in self.server_state.default_headers)
+        told = b"".join((head, fields, b"\r\n", b"" if method == "HEAD" else body))
+        self.transport.write(told.replace(_NO_ID, os.urandom(len(_NO_ID) // 2).hex().encode()))
 
     def _linger(self) -> None:
         """Close once the caller has, or soon, and throw away what still comes."""
@@ -269,3 +264,21 @@ class _Connection(HttpToolsProtocol):
         if self.transport.can_write_eof():
             self.transport.write_eof()
         self.loop.call_later(_LINGER_S, self.transport.abort)
+
+
+@cache
+def _refusal(code: str, detail: str, *, closes: bool) -> tuple[bytes, bytes]:
+    """Write the head of a refusal, without its end, and the body; both wait for the id of the request."""
+    headers = {"Retry-After": "1"} if code == "overloaded" else {}
+    refusal = refusal_of(ProblemError(code, detail, headers=headers), _NO_ID.decode())
+    fields = {
+        **refusal.headers,
+        "Content-Type": PROBLEM_JSON,
+        "Content-Length": str(len(refusal.body)),
+        "X-Request-Id": _NO_ID.decode(),
+        "X-Content-Type-Options": "nosniff",
+    }
+    if closes:
+        fields["Connection"] = "close"
+    lines = (f"{name.lower()}: {value}\r\n".encode("latin-1") for name, value in fields.items())
+    return b"".join((STATUS_LINE[refusal.status], *lines)), refusal.body

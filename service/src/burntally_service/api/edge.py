@@ -77,10 +77,10 @@ class Edge:
         finally:
             self._record(scope, visit, reply)
 
-    def count_refusal(self, method: str, problem: str) -> None:
-        """Count a request that was refused before it came here."""
-        self._metrics.begin()
-        self._metrics.end("none", method, status=PROBLEMS[problem].status, duration_s=0.0, problem=problem)
+    def count_refusals(self, method: str, problem: str, count: int) -> None:
+        """Count requests that were refused before they came here."""
+        told = method if method in _METHODS else "other"
+        self._metrics.refuse(told, status=PROBLEMS[problem].status, problem=problem, count=count)
 
     def _visit(self, scope: HTTPScope) -> _Visit:
         identity = identity_of(scope)

@@ -78,6 +78,11 @@ class Metrics:
         if problem is not None:
             self._refusals.labels(problem).inc()
 
+    def refuse(self, method: str, *, status: int, problem: str, count: int) -> None:
+        """Count requests that were refused before they were looked at."""
+        self._requests.labels("none", method, f"{status // 100}xx").inc(count)
+        self._refusals.labels(problem).inc(count)
+
     def exposition(self) -> bytes:
         """Write all of them."""
         return generate_latest(self._registry)

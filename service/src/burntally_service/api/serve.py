@@ -66,7 +66,7 @@ def _server(app: Edge, settings: Settings) -> Server:
         app,
         host=settings.host,
         port=settings.port,
-        http=bounded(Bounds(settings=settings, on_refusal=app.count_refusal)),
+        http=bounded(Bounds(settings=settings, on_refusals=app.count_refusals)),
         ws="none",
         log_config=None,
         log_level=settings.log_level,

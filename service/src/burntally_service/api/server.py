@@ -72,28 +72,27 @@ class Server(uvicorn.Server):
         listening = [shared.dup() for server in self.servers for shared in server.sockets]
         for server in self.servers:
             server.close()
-        taken = 0
-        for listener in listening:
-            with listener:
-                taken += await self._take_all(listener)
-        if taken or self.server_state.connections:
-            await asyncio.sleep(min(_LAST_S, self._drain_timeout_s))
-
-    async def _take_all(self, listener: socket.socket) -> int:
-        loop = asyncio.get_running_loop()
-        waiting: list[socket.socket] = []
-        while True:
-            try:
-                waiting.append(listener.accept()[0])
-            except OSError:
-                break
+        waiting = [connected for listener in listening for connected in _last_of(listener)]
         for connected in waiting:
-            connected.settimeout(0.0)
-            await loop.connect_accepted_socket(self._protocol, connected)
-        return len(waiting)
+            await asyncio.get_running_loop().connect_accepted_socket(self._protocol, connected)
+        if waiting or self.server_state.connections:
+            await asyncio.sleep(min(_LAST_S, self._drain_timeout_s))
 
     def _protocol(self) -> asyncio.Protocol:
         protocol: asyncio.Protocol = self.config.http_protocol_class(  # type: ignore[call-arg] # what the server passes
             config=self.config, server_state=self.server_state, app_state=self.lifespan.state
         )
         return protocol
+
+
+def _last_of(listener: socket.socket) -> list[socket.socket]:
+    """Accept all who wait, and stop listening in the same breath, before anyone else can be there."""
+    waiting: list[socket.socket] = []
+    with listener:
+        while True:
+            try:
+                connected = listener.accept()[0]
+            except OSError:
+                return waiting
+            connected.settimeout(0.0)
+            waiting.append(connected)
