@@ -25,7 +25,6 @@ AnyRequest = Request[Any, Any, Any]
 
 VERSION: Final = version("burntally-service")
 _NOT_MODIFIED: Final = 304
-_TAG_BYTES: Final = 16
 _NO_QUERY: Final = "a path without a query: what an operation is asked stands in its body or path"
 _ANY_TAG: Final = "*"
 _TAG: Final = re.compile(r'"[^"]*"')
@@ -83,7 +82,8 @@ def reply(
 
 def entity_tag(names: Iterable[str], *parts: bytes) -> str:
     """Digest of a request and its answer: strong, since both are the same bytes wherever they were computed."""
-    digest = hashlib.blake2b("\n".join((VERSION, *names)).encode(), digest_size=_TAG_BYTES)
+    # Common processors have instructions for it, which makes it the quickest by far.
+    digest = hashlib.sha256("\n".join((VERSION, *names)).encode())
     for part in parts:
         # Lengths keep apart what differs only in where one part ends.
         digest.update(b"%d:" % len(part))
