@@ -6,7 +6,9 @@ import msgspec
 import pytest
 from litestar.testing import TestClient
 
+from burntally_service.api.app import create_app
 from burntally_service.api.examples import example_bytes
+from burntally_service.api.settings import Settings
 from burntally_service.operations import OPERATIONS, answer
 
 Client = TestClient[Any]
@@ -112,6 +114,15 @@ def test_long_bodies_are_answered_as_short_ones(client: Client) -> None:
     padded = example_bytes("create_budget").ljust(100_000)
     response = client.post("/v1/budgets", headers={"Content-Type": JSON}, content=padded)
     assert response.content == ask(client, "create_budget").content
+
+
+def test_a_service_that_was_stopped_and_starts_again_answers_again() -> None:
+    app = create_app(Settings())
+    # Long enough to be computed by a worker.
+    padded = example_bytes("create_budget").ljust(20_000)
+    for _ in range(2):
+        with TestClient(app, base_url="http://127.0.0.1") as client:
+            assert client.post("/v1/budgets", headers={"Content-Type": JSON}, content=padded).status_code == 200
 
 
 @pytest.mark.parametrize("path,status", [("/healthz", "ok"), ("/readyz", "ready")])

@@ -55,6 +55,7 @@ def create_app(settings: Settings | None = None) -> Edge:
 @asynccontextmanager
 async def _ready(application: Litestar) -> AsyncGenerator[None, None]:
     """Answer one budget before calling the service ready, so that the first caller waits for no import."""
+    application.state.turns.begin()
     await asyncio.to_thread(operations.answer, "create_budget", example_bytes("create_budget"))
     application.state.ready = True
     try:

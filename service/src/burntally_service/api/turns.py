@@ -38,11 +38,17 @@ class Turns:
     """
 
     def __init__(self, settings: Settings) -> None:
+        self._settings = settings
+        self.begin()
+
+    def begin(self) -> None:
+        """Begin, or begin again after `close`; the event loop may be another one then."""
+        settings = self._settings
         self._workers = Workers(
             most=settings.workers, most_waiting=settings.most_waiting, timeout_s=settings.compute_timeout_s
         )
         self._line = _Line(settings.most_in_flight)
-        self._stopping: asyncio.Event = asyncio.Event()
+        self._stopping = asyncio.Event()
 
     async def answer(self, operation: Operation, asked: bytes, media: tuple[str, str], receive: _Receive) -> bytes:
         """Answer a request, as `operations.answer` does.
