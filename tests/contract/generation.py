@@ -1,5 +1,6 @@
 """How requests are generated from the contract."""
 
+import os
 import tomllib
 from pathlib import Path
 from typing import Any, Final
@@ -15,7 +16,12 @@ from burntally_service.api.settings import Settings
 PROFILE: Final = tomllib.loads(Path(__file__).with_name("schemathesis.toml").read_text(encoding="utf-8"))
 AnyCase = schemathesis.Case[Any]
 
-RELEASE_PROFILE: Final = PROFILE | {"generation": PROFILE["generation"] | {"max-examples": 400}, "operations": []}
+SEED: Final = int(os.environ.get("BURNTALLY_TEST_SEED", PROFILE["seed"]))
+RELEASE_PROFILE: Final = PROFILE | {
+    "seed": SEED,
+    "generation": PROFILE["generation"] | {"max-examples": 400},
+    "operations": [],
+}
 
 # A pattern cannot say that "999 deg" is no inclination, so texts are drawn from these; what lies out of bounds has
 # tests of its own.
