@@ -10,8 +10,8 @@ from burntally_service.haste import NeedsTimeError
 __all__ = ["MOST_AT_ONCE", "MOST_WORK", "check_work", "work_of"]
 
 MOST_WORK: Final = 500_000
-"""Most that a design may ask for, a second or two; the most legs and branches that there may be fit in, flown unsplit by
-stages of one engine and one load."""
+"""Most that a design may ask for, a second or two; the most legs and branches that there may be fit in, flown unsplit
+by stages of one engine and one load."""
 
 MOST_AT_ONCE: Final = 500
 """Most that is worth computing where a request arrived: a few milliseconds."""
