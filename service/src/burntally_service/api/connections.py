@@ -69,7 +69,7 @@ class Bounds:
         self.refused.clear()
 
 
-def bounded(bounds: Bounds) -> type[asyncio.Protocol]:
+def bounded(bounds: Bounds) -> type[HttpToolsProtocol]:
     """Make the protocol of the connections that share these bounds."""
     return type("BoundedConnection", (_Connection,), {"bounds": bounds})
 

@@ -62,11 +62,12 @@ def _server(app: Edge, settings: Settings) -> Server:
     def drain() -> None:
         app.app.state.ready = False
 
+    connection = bounded(Bounds(settings=settings, on_refusals=app.count_refusals))
     config = uvicorn.Config(
         app,
         host=settings.host,
         port=settings.port,
-        http=bounded(Bounds(settings=settings, on_refusals=app.count_refusals)),
+        http=connection,
         ws="none",
         log_config=None,
         log_level=settings.log_level,
@@ -74,7 +75,13 @@ def _server(app: Edge, settings: Settings) -> Server:
         proxy_headers=False,
         server_header=False,
     )
-    return Server(config, drain_timeout_s=settings.drain_timeout_s, on_signal=drain, on_late=app.app.state.turns.stop)
+    return Server(
+        config,
+        connection=connection,
+        drain_timeout_s=settings.drain_timeout_s,
+        on_signal=drain,
+        on_late=app.app.state.turns.stop,
+    )
 
 
 def _warn(settings: Settings) -> None:

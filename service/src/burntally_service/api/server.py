@@ -7,6 +7,7 @@ from types import FrameType
 from typing import Final
 
 import uvicorn
+from uvicorn.protocols.http.httptools_impl import HttpToolsProtocol
 
 __all__ = ["Server"]
 
@@ -29,6 +30,8 @@ class Server(uvicorn.Server):
     ----------
     config : uvicorn.Config
         What it serves.
+    connection : type
+        Protocol of a connection, the same that the configuration names.
     drain_timeout_s : float
         Longest that all of this may take.
     on_signal, on_late : callable
@@ -39,11 +42,13 @@ class Server(uvicorn.Server):
         self,
         config: uvicorn.Config,
         *,
+        connection: type[HttpToolsProtocol],
         drain_timeout_s: float,
         on_signal: Callable[[], None],
         on_late: Callable[[], None],
     ) -> None:
         super().__init__(config)
+        self._connection = connection
         self._drain_timeout_s = drain_timeout_s
         self._on_signal = on_signal
         self._on_late = on_late
@@ -79,10 +84,7 @@ class Server(uvicorn.Server):
             await asyncio.sleep(min(_LAST_S, self._drain_timeout_s))
 
     def _protocol(self) -> asyncio.Protocol:
-        protocol: asyncio.Protocol = self.config.http_protocol_class(  # type: ignore[call-arg] # what the server passes
-            config=self.config, server_state=self.server_state, app_state=self.lifespan.state
-        )
-        return protocol
+        return self._connection(config=self.config, server_state=self.server_state, app_state=self.lifespan.state)
 
 
 def _last_of(listener: socket.socket) -> list[socket.socket]:
