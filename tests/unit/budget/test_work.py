@@ -60,7 +60,8 @@ def test_what_flies_each_burn_in_one_is_within_the_bound() -> None:
     check_work(design(legs=MOST_LEGS, branches=11))
 
 
-def test_the_most_of_everything_is_refused_before_it_is_computed() -> None:
+def test_the_most_of_everything_is_refused_before_it_is_computed(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("burntally_service.budget.draw_up", None)
     most = body(legs=MOST_LEGS, splits=MOST_SPLITS, branches=11, engines=MOST_ENGINES, loads=MOST_LOADS)
     with pytest.raises(UncomputableError) as refusal:
         answer("create_budget", most)
