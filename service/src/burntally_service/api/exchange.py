@@ -25,6 +25,7 @@ AnyRequest = Request[Any, Any, Any]
 
 VERSION: Final = version("burntally-service")
 _NOT_MODIFIED: Final = 304
+_TAG_DIGITS: Final = 32
 _NO_QUERY: Final = "a path without a query: what an operation is asked stands in its body or path"
 _ANY_TAG: Final = "*"
 _TAG: Final = re.compile(r'"[^"]*"')
@@ -88,7 +89,7 @@ def entity_tag(names: Iterable[str], *parts: bytes) -> str:
         # Lengths keep apart what differs only in where one part ends.
         digest.update(b"%d:" % len(part))
         digest.update(part)
-    return f'"{digest.hexdigest()}"'
+    return f'"{digest.hexdigest()[:_TAG_DIGITS]}"'
 
 
 def is_known(tag: str, known_tags: str) -> bool:
