@@ -4,7 +4,9 @@ Run with ``pytest -m benchmark -s tests/benchmarks/test_load.py``, with `wrk` in
 """
 
 import http.client
+import os
 import re
+import signal
 import subprocess
 import sys
 import time
@@ -119,21 +121,24 @@ def test_a_crowd_of_16_is_answered_in_time(served: Served, script: Path, capsys:
     assert best <= 25.0
 
 
-def test_a_flood_is_refused_at_once_and_leaves_nothing(
-    served: Served, script: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
-    worst: list[float] = []
-    recoveries: list[float] = []
-    for _ in range(RUNS):
-        with flood(served, script, 500) as load:
-            time.sleep(1.0)
-            refused = latencies(served, 40).get(503, [])
-            load.communicate()
-        worst.append(quantile(refused))
-        begins = time.perf_counter()
-        while served.ask(SMALL).status != 200:
-            time.sleep(0.02)
-        recoveries.append(time.perf_counter() - begins)
-    tell(capsys, f"500 connections: refused within {min(worst) * 1e3:.0f} ms, recovered in {max(recoveries):.2f} s")
-    assert max(recoveries) < 2.0
-    assert min(worst) < 0.05
+def test_a_flood_is_refused_at_once_and_leaves_nothing(script: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    refused, recovered = [], []
+    with serving(log_level="info", most_in_flight=1, compute_timeout_s=60, workers=1) as served:
+        for _ in range(RUNS):
+            # One long request fills the service, so that wrk's figures are of refusals alone; its worker sleeps.
+            with served.connect() as full:
+                full.sendall(head_of(LONG) + LONG)
+                time.sleep(1.0)
+                for pid in served.workers():
+                    os.kill(pid, signal.SIGSTOP)
+                told = flood(served, script, 500).communicate()[0]
+                for pid in served.workers():
+                    os.kill(pid, signal.SIGCONT)
+            refused.append(milliseconds(told))
+            begins = time.perf_counter()
+            while served.ask(SMALL).status != 200:
+                time.sleep(0.02)
+            recovered.append(time.perf_counter() - begins)
+    tell(capsys, f"500 connections: p99 of refusals {min(refused):.0f} ms, recovered in {max(recovered):.2f} s")
+    assert max(recovered) < 2.0
+    assert min(refused) < 50.0

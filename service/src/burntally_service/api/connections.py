@@ -15,7 +15,7 @@ from functools import cache
 from typing import Any, Final, Literal
 
 from uvicorn.config import Config
-from uvicorn.protocols.http.httptools_impl import STATUS_LINE, HttpToolsProtocol, RequestResponseCycle
+from uvicorn.protocols.http.httptools_impl import STATUS_LINE, HttpToolsProtocol
 from uvicorn.server import ServerState
 
 from burntally_service.api.problems import PROBLEM_JSON, ProblemError, refusal_of
@@ -31,6 +31,8 @@ _LATE_S: Final = 1.0
 _LINGER_S: Final = 0.5
 _FETCH_TIMEOUT_S: Final = 8.0
 _TELL_EACH_S: Final = 1.0
+# The event loop would make a quarter of a mebibyte anew for each read.
+_BUFFER: Final = memoryview(bytearray(64 * 1024))
 _NO_ID: Final = b"0" * 16
 
 _Waits = Literal["head", "body", "nothing"]
@@ -61,6 +63,11 @@ class Bounds:
             loop.call_later(_TELL_EACH_S, self.tell)
         self.refused[method, code] += 1
 
+    @property
+    def is_full(self) -> bool:
+        """Whether there is no room for another request."""
+        return self.in_flight >= self.settings.most_in_flight
+
     def tell(self) -> None:
         """Tell what was refused since it was told last."""
         for (method, code), count in self.refused.items():
@@ -78,7 +85,7 @@ class _HeadTooLargeError(Exception):
     """Raised into the parser, which stops there."""
 
 
-class _Connection(HttpToolsProtocol):
+class _Connection(asyncio.BufferedProtocol, HttpToolsProtocol):
     """One connection, within bounds."""
 
     bounds: Bounds
@@ -97,6 +104,7 @@ class _Connection(HttpToolsProtocol):
         self._fetching: asyncio.TimerHandle | None = None
         self._head_bytes = 0
         self._is_counted = False
+        self._is_refused = False
         self._is_over = False
 
     def connection_made(self, transport: asyncio.Transport) -> None:  # type: ignore[override]  # as in the base
@@ -117,6 +125,17 @@ class _Connection(HttpToolsProtocol):
             self._fetching.cancel()
         self._count_out()
         super().connection_lost(exc)
+
+    def get_buffer(self, sizehint: int) -> memoryview:  # noqa: ARG002 - as the event loop asks
+        """Lend the one buffer that all connections read into; what came is taken out of it before another reads."""
+        return _BUFFER
+
+    def buffer_updated(self, nbytes: int) -> None:
+        """Take what came out of the buffer."""
+        self.data_received(bytes(_BUFFER[:nbytes]))
+
+    def eof_received(self) -> None:
+        """Let a connection end that its caller has closed."""
 
     def data_received(self, data: bytes) -> None:
         """Read on, and see that what is still missing comes in time."""
@@ -150,13 +169,24 @@ class _Connection(HttpToolsProtocol):
         super().on_header(name, value)
 
     def on_headers_complete(self) -> None:
-        """Begin to answer; the body may still be on its way."""
+        """Begin to answer, or refuse where too many are answered already; the body may still be on its way."""
         self._waits = "body"
-        super().on_headers_complete()
+        self._is_refused = not self._is_counted and self.bounds.is_full
+        if self._is_refused:
+            self._turn_away()
+        else:
+            super().on_headers_complete()
+
+    def on_body(self, body: bytes) -> None:
+        """Take a piece of the body; nobody reads that of a request that was refused."""
+        if not self._is_refused:
+            super().on_body(body)
 
     def on_message_complete(self) -> None:
         """Count a request that is whole."""
         self._waits = "nothing"
+        if self._is_refused:
+            return
         if not self._is_counted and not self.cycle.response_complete:
             self._is_counted = True
             self.bounds.in_flight += 1
@@ -197,15 +227,15 @@ class _Connection(HttpToolsProtocol):
         super().timeout_keep_alive_handler()
         self._fetching = self._fetching or self.loop.call_later(_FETCH_TIMEOUT_S, self.transport.abort)
 
-    def _start_asgi_task(self, cycle: RequestResponseCycle, app: Any) -> None:  # noqa: ANN401 - as in the base
-        """Answer a request, or refuse it where too many are being answered."""
-        if self.bounds.in_flight < self.bounds.settings.most_in_flight:
-            super()._start_asgi_task(cycle, app)
-            return
-        self._refuse(cycle.scope["method"], "overloaded", "as many requests are in flight as may be", cycle)
-        cycle.response_started = cycle.response_complete = True
-        if cycle.keep_alive:
-            self.on_response_complete()
+    def _turn_away(self) -> None:
+        """Refuse a request by its head alone."""
+        # There is one, since it has just called; its type in the base says that there may be none.
+        parser: Any = self.parser
+        stays = parser.should_keep_alive() and parser.get_http_version() == "1.1"
+        method = parser.get_method().decode("ascii")
+        self._refuse(method, "overloaded", "as many requests are in flight as may be", closes=not stays)
+        if stays:
+            super().on_response_complete()
         else:
             self._linger()
 
@@ -249,10 +279,10 @@ class _Connection(HttpToolsProtocol):
         else:
             self.transport.abort()
 
-    def _refuse(self, method: str, code: str, detail: str, cycle: RequestResponseCycle | None = None) -> None:
+    def _refuse(self, method: str, code: str, detail: str, *, closes: bool = True) -> None:
         """Write a refusal without asking the application."""
         self.bounds.refuse(method, code, self.loop)
-        head, body = _refusal(code, detail, closes=cycle is None or not cycle.keep_alive)
+        head, body = _refusal(code, detail, closes=closes)
         fields = b"".join(b"%s: %s\r\n" % field for field in self.server_state.default_headers)
         told = b"".join((head, fields, b"\r\n", b"" if method == "HEAD" else body))
         self.transport.write(told.replace(_NO_ID, os.urandom(len(_NO_ID) // 2).hex().encode()))
