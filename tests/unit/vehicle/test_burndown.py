@@ -75,6 +75,11 @@ def test_loads_that_run_dry_together_end_one_interval() -> None:
     assert sum(left) == pytest.approx(0.0, abs=1e-12)
 
 
+def test_the_weakest_engine_of_all_burns_nothing() -> None:
+    # Its flow is below the least number that there is.
+    assert burn_down([100.0, 0.0], main_engines(stage(Engine(thrust=5e-324, isp=ISP)))) == ([], [100.0, 0.0])
+
+
 def test_what_was_never_loaded_does_not_burn() -> None:
     assert burn_down([0.0, 0.0], main_engines(stage(Engine(thrust=1000.0, isp=ISP)))) == ([], [0.0, 0.0])
 

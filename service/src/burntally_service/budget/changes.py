@@ -20,6 +20,9 @@ _MOST_LOAD = 1e9
 _SIGNIFICANT = 4
 """Digits that a changed number is rounded to, away from the shortfall."""
 
+_LEAST_ROUNDED = 1e-290
+"""What is smaller stays as it is: its digits lie beyond the powers of ten that there are."""
+
 
 class Change(Struct, frozen=True, kw_only=True):
     """A field that may be changed, up to a bound, and in what words and unit."""
@@ -134,7 +137,7 @@ def least_change(change: Change, owed: Callable[[float], float]) -> float | None
 
 def _rounded(value: float, *, up: bool) -> float:
     """Round to a few significant digits, up or down."""
-    if value == 0.0:
+    if abs(value) < _LEAST_ROUNDED:
         return value
     scale = 10.0 ** (_SIGNIFICANT - 1 - math.floor(math.log10(abs(value))))
     return (math.ceil(value * scale) if up else math.floor(value * scale)) / scale

@@ -114,7 +114,8 @@ def burn_down(usable: Sequence[float], engines: Sequence[LitEngine]) -> tuple[li
     dry = [DRY_FRACTION * mass for mass in usable]
     intervals: list[Interval] = []
     burning = _burning(engines, left, dry)
-    while burning:
+    # A thrust so small that its flow is below all numbers burns nothing.
+    while any(flow > 0.0 for flow in _flows(burning, len(left))):
         interval = _next_interval(left, burning)
         intervals.append(interval)
         burning = _burning(burning, left, dry)
