@@ -43,7 +43,8 @@ def test_both_packages_are_there_as_wheel_and_as_sources(dist: Path) -> None:
 
 def test_the_parts_are_the_pinned_ones_and_ours(dist: Path) -> None:
     (bom,) = dist.glob("*.cdx.json")
-    parts = json.loads(bom.read_text(encoding="utf-8"))["components"]
+    told = json.loads(bom.read_text(encoding="utf-8"))
+    parts = [told["metadata"]["component"], *told["components"]]
     assert {plain(part["name"]): part["version"] for part in parts} == delivered()
 
 
