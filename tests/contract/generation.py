@@ -16,7 +16,7 @@ from burntally_service.api.settings import Settings
 PROFILE: Final = tomllib.loads(Path(__file__).with_name("schemathesis.toml").read_text(encoding="utf-8"))
 AnyCase = schemathesis.Case[Any]
 
-SEED: Final = int(os.environ.get("BURNTALLY_TEST_SEED", PROFILE["seed"]))
+SEED: Final = int(os.environ.get("CONTRACT_TEST_SEED", PROFILE["seed"]))
 RELEASE_PROFILE: Final = PROFILE | {
     "seed": SEED,
     "generation": PROFILE["generation"] | {"max-examples": 400},

@@ -1,6 +1,6 @@
 """As `test_generated`, at length. Its cases are drawn when it is collected, so only `-m release` collects it.
 
-`BURNTALLY_TEST_SEED` draws others; `.ci/nightly` goes through several seeds.
+`CONTRACT_TEST_SEED` draws others; `.ci/nightly` goes through several seeds.
 """
 
 from collections import Counter

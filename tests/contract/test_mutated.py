@@ -18,7 +18,7 @@ from burntally_service.operations import OPERATIONS
 from tests.contract.firing import DEADLINE_S, Outcome, fire, resident_mib
 from tests.contract.mutations import mutated
 
-SEED = int(os.environ.get("BURNTALLY_TEST_SEED", "3"))
+SEED = int(os.environ.get("CONTRACT_TEST_SEED", "3"))
 GROWTH_MIB = 24.0
 
 
