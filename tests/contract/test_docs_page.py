@@ -72,6 +72,14 @@ def test_it_holds_every_operation_and_schema(client: Client, document: dict[str,
     assert operations | set(document["components"]["schemas"]) <= ids
 
 
+def test_it_tells_every_code_that_an_operation_may_refuse_with(client: Client) -> None:
+    page = client.get("/docs").text
+    told = re.search(r'id="create_budget".*?<ul class="problems">(.*?)</ul>', page, re.DOTALL)
+    assert told is not None
+    codes = set(re.findall(r'href="/problems/([a-z-]+)"', told[1]))
+    assert {"inconsistent-request", "uncomputable", "overloaded", "took-too-long"} <= codes
+
+
 def test_it_says_what_it_is_not_for(client: Client) -> None:
     assert "Not for flight safety, range safety, licensing or operations." in client.get("/docs").text
 

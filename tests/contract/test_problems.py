@@ -217,6 +217,24 @@ def test_a_missing_content_type_is_told_to_be_missing(client: Client) -> None:
     assert client.post("/v1/budgets").json()["detail"].startswith("Content-Type is missing; ")
 
 
+def test_a_content_type_that_is_not_read_is_told_as_it_was_sent(client: Client) -> None:
+    problem = client.post("/v1/budgets", headers={"Content-Type": "application/yaml"}).json()
+    assert problem["detail"].startswith("Content-Type is 'application/yaml'; ")
+
+
+@pytest.mark.parametrize(
+    "pointer, name, near",
+    [("/mission/start/body", "erth", "earth"), ("/rules/preset", "esa-2021", "esa-2012")],
+)
+def test_a_name_that_leads_nowhere_is_told_with_the_nearest_one(
+    pointer: str, name: str, near: str, client: Client
+) -> None:
+    problem = client.post("/v1/budgets", headers=JSON, content=changed(pointer, name)).json()
+    assert problem["detail"].startswith(f"{pointer} is no ")
+    assert problem["detail"].endswith(f"that is known; did you mean '{near}'?")
+    assert problem["errors"][0]["read"] == f'"{name}"'
+
+
 @pytest.mark.usefixtures("failing")
 def test_a_failure_tells_nothing_of_the_inside(client: Client) -> None:
     response = client.get("/v1/bodies")

@@ -165,7 +165,8 @@ def _told(asked: Asked) -> Outcome:
         return Refused(code=error.code, violations=list(error.violations))
     except RecursionError:
         return Refused(
-            code=ContractError.code, violations=[Violation(pointer="", message="the body is nested too deeply")]
+            code=ContractError.code,
+            violations=[Violation(pointer="", message="the body is nested too deeply", expected="fewer levels")],
         )
     except Exception:  # noqa: BLE001 - whatever it is, the one who asked is told and the next one is served
         return Failed(traceback=traceback.format_exc())

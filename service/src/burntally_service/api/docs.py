@@ -14,7 +14,7 @@ import msgspec
 
 from burntally.model.decode import JSON
 from burntally_service.api import openapi
-from burntally_service.api.problems import ProblemType
+from burntally_service.api.problems import PROBLEM_JSON, ProblemType
 
 __all__ = ["page", "problem_list"]
 
@@ -42,12 +42,13 @@ _TYPE_BOUNDS: Final = (
 def page() -> bytes:
     """Return the page that documents the contract."""
     document = openapi.document()
+    problems = document["components"]["responses"]
     parts = [
         f'<p class="lead">{_marked(document["info"]["summary"])}</p>',
         *(f"<p>{_marked(text)}</p>" for text in document["info"]["description"].split("\n\n")),
         _ELSEWHERE,
         '<h2 id="operations">Operations</h2>',
-        *(_operation(path, method, node) for path, method, node in _operations(document)),
+        *(_operation(path, method, node, problems=problems) for path, method, node in _operations(document)),
         '<h2 id="schemas">Schemas</h2>',
         *(_schema(name, node) for name, node in document["components"]["schemas"].items()),
     ]
@@ -107,7 +108,7 @@ def _navigation(document: Node) -> str:
     )
 
 
-def _operation(path: str, method: str, node: Node) -> str:
+def _operation(path: str, method: str, node: Node, problems: Node) -> str:
     answer = node["responses"]["200"]["content"][JSON]
     parts = [
         f"<p>{_marked(node['description'])}</p>",
@@ -115,7 +116,7 @@ def _operation(path: str, method: str, node: Node) -> str:
         _request(node["requestBody"]["content"][JSON]) if "requestBody" in node else "",
         _trial(path, method, node),
         f"<h4>Answer: {_type(answer['schema'])}</h4>{_examples(answer['examples'])}",
-        f"<h4>Problems</h4>{_problems(node['responses'])}",
+        f"<h4>Problems</h4>{_problems(node['responses'], problems)}",
     ]
     return (
         f'<section class="operation" id="{node["operationId"]}">'
@@ -164,15 +165,16 @@ def _trial(path: str, method: str, node: Node) -> str:
     )
 
 
-def _problems(responses: Node) -> str:
-    names = (reference["$ref"].rpartition("/")[2] for status, reference in responses.items() if status != "200")
-    statuses = (status for status in responses if status != "200")
-    items = "".join(f"<li>{status} {_spaced(name)}</li>" for status, name in zip(statuses, names, strict=True))
+def _problems(responses: Node, problems: Node) -> str:
+    named = ((status, node["$ref"].rpartition("/")[2]) for status, node in responses.items() if status != "200")
+    items = "".join(f"<li>{status} {_codes(problems[name])}</li>" for status, name in named)
     return f'<ul class="problems">{items}</ul>'
 
 
-def _spaced(name: str) -> str:
-    return re.sub(r"(?<=[a-z])(?=[A-Z])", " ", name).lower()
+def _codes(problem: Node) -> str:
+    """Every code that a status may bear, each with the way to its description."""
+    codes = problem["content"][PROBLEM_JSON]["examples"]
+    return ", ".join(f'<a href="/problems/{code}">{code.replace("-", " ")}</a>' for code in codes)
 
 
 def _schema(name: str, node: Node) -> str:

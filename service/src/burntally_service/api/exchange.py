@@ -26,6 +26,7 @@ AnyRequest = Request[Any, Any, Any]
 VERSION: Final = version("burntally-service")
 _NOT_MODIFIED: Final = 304
 _TAG_DIGITS: Final = 32
+_LONGEST_READ: Final = 60
 _NO_QUERY: Final = "a path without a query: what an operation is asked stands in its body or path"
 _ANY_TAG: Final = "*"
 _TAG: Final = re.compile(r'"[^"]*"')
@@ -113,7 +114,7 @@ def _body_media_type(headers: dict[bytes, str]) -> str:
     sent = headers.get(b"content-type", "")
     media_type = body_media_type(sent)
     if media_type is None:
-        read = "is missing" if not sent else "is one that is not read"
+        read = f"is {sent[:_LONGEST_READ]!r}" if sent else "is missing"
         raise ProblemError(
             "unsupported-media-type", f"Content-Type {read}; it must be application/json (UTF-8) or application/msgpack"
         )

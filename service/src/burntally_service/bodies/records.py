@@ -1,6 +1,7 @@
 """The solar catalogue as it is told to whoever asks."""
 
-from burntally.model.errors import NotFoundError, Violation
+from burntally.model.errors import NotFoundError
+from burntally.model.names import unknown_name
 from burntally.model.operations import Bodies, BodyRecord
 from burntally_service.bodies.body import Body
 from burntally_service.bodies.solar import catalogue
@@ -44,8 +45,7 @@ def body_named(name: str) -> BodyRecord:
     """
     body = catalogue().get(name)
     if body is None:
-        known = ", ".join(catalogue())
-        raise NotFoundError([Violation(pointer="/name", message="no body has this name", read=name, expected=known)])
+        raise NotFoundError([unknown_name("body", name, known=catalogue(), pointer="/name")])
     return _record(body)
 
 

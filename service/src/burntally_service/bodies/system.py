@@ -5,6 +5,7 @@ from collections.abc import Iterator, Mapping
 from types import MappingProxyType
 
 from burntally.model import errors, mission
+from burntally.model.names import unknown_name
 from burntally_service.bodies.body import Body
 from burntally_service.bodies.solar import catalogue
 from burntally_service.kernels.orbits import soi_radius
@@ -58,7 +59,7 @@ def _violations(system: mission.System, known: Mapping[str, Body], pointer: str)
     for index, body in enumerate(system.bodies):
         here = f"{pointer}/{index}"
         if body.name in taken:
-            yield _violation(f"{here}/name", "another body has this name", body.name, "a name of its own")
+            yield _violation(f"{here}/name", "is the name of another body", f'"{body.name}"', "a name of its own")
         taken.add(body.name)
         if body.parent is None:
             yield from _root_violations(body, root, here)
@@ -70,9 +71,9 @@ def _violations(system: mission.System, known: Mapping[str, Body], pointer: str)
 def _root_violations(body: mission.Body, root: str | None, pointer: str) -> Iterator[errors.Violation]:
     """Yield what is wrong with a body that has no parent."""
     if root is not None:
-        yield _violation(pointer, f"a second root beside {root}", None, "a parent")
+        yield _violation(pointer, f"is a second root beside {root!r}", None, "a parent")
     elif body.orbit is not None:
-        yield _violation(f"{pointer}/orbit", "the root moves about nothing", None, "no orbit")
+        yield _violation(f"{pointer}/orbit", "is an orbit of the root, which moves about nothing", None, "no orbit")
 
 
 def _parent_violations(
@@ -80,9 +81,9 @@ def _parent_violations(
 ) -> Iterator[errors.Violation]:
     """Yield what is wrong with a parent that the user's own bodies must hold."""
     if parent not in parents:
-        yield _violation(pointer, "no body has this name", parent, ", ".join(sorted({*parents} - {name})))
+        yield unknown_name("body", parent, known=sorted({*parents} - {name}), pointer=pointer)
     elif _is_own_ancestor(name, parents):
-        yield _violation(pointer, "the body moves about itself", parent, "a parent that leads to the root")
+        yield _violation(pointer, "leads back to the body itself", f'"{parent}"', "a parent that leads to the root")
 
 
 def _violation(pointer: str, message: str, read: str | None, expected: str) -> errors.Violation:

@@ -10,6 +10,7 @@ from functools import partial
 from burntally.model.design import Design
 from burntally.model.errors import InconsistentError, UncomputableError, Violation
 from burntally.model.mission import Location, System
+from burntally.model.names import unknown_name
 from burntally.model.operations import PerformanceRequest, TransferRequest
 from burntally_service.bodies import catalogue, system_of
 from burntally_service.budget.rules import resolve
@@ -41,9 +42,7 @@ def surface_gravity(name: str) -> float:
     """Gravity at the reference radius of a body of the solar catalogue [m/s2]; it refuses a name that is not there."""
     body = catalogue().get(name)
     if body is None:
-        known = ", ".join(catalogue())
-        violation = Violation(pointer="/gravity_of", message="no body has this name", read=name, expected=known)
-        raise InconsistentError([violation])
+        raise InconsistentError([unknown_name("body", name, known=catalogue(), pointer="/gravity_of")])
     return body.mu / (body.radius * body.radius)
 
 

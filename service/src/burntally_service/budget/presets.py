@@ -8,7 +8,8 @@ from typing import Any
 
 import msgspec
 
-from burntally.model.errors import NotFoundError, Violation
+from burntally.model.errors import NotFoundError
+from burntally.model.names import unknown_name
 from burntally.model.operations import PresetRecord, Presets
 from burntally.model.rules import Rules
 
@@ -34,9 +35,9 @@ def preset_rules(name: str) -> Rules | None:
     return msgspec.convert(stated, Rules)
 
 
-def preset_names() -> str:
-    """Names of all presets, as a violation tells what it expected."""
-    return ", ".join(_policies())
+def preset_names() -> tuple[str, ...]:
+    """Names of all presets."""
+    return tuple(_policies())
 
 
 def preset_digest(name: str) -> str | None:
@@ -67,8 +68,7 @@ def preset_named(name: str) -> PresetRecord:
     """
     rules = preset_rules(name)
     if rules is None:
-        violation = Violation(pointer="/name", message="no preset has this name", read=name, expected=preset_names())
-        raise NotFoundError([violation])
+        raise NotFoundError([unknown_name("preset", name, known=preset_names(), pointer="/name")])
     policy = _policies()[name]
     return PresetRecord(
         name=name, title=policy["title"], source=policy["source"], notes=list(policy.get("notes", [])), rules=rules

@@ -2,7 +2,8 @@
 
 from msgspec import UNSET, structs
 
-from burntally.model.errors import UncomputableError, Violation
+from burntally.model.errors import UncomputableError
+from burntally.model.names import unknown_name
 from burntally.model.rules import Contingency, Limits, Rules
 from burntally_service.budget.presets import preset_names, preset_rules
 
@@ -36,16 +37,8 @@ def resolve(rules: Rules, *, pointer: str = "/rules") -> Rules:
         return rules
     preset = preset_rules(rules.preset)
     if preset is None:
-        raise UncomputableError(
-            [
-                Violation(
-                    pointer=f"{pointer}/preset",
-                    message="no preset has this name",
-                    read=rules.preset,
-                    expected=preset_names(),
-                )
-            ]
-        )
+        violation = unknown_name("preset", rules.preset, known=preset_names(), pointer=f"{pointer}/preset")
+        raise UncomputableError([violation])
     stated = {rule.category for rule in rules.contingency}
     inherited = [rule for rule in preset.contingency if rule.category not in stated]
     return structs.replace(

@@ -67,7 +67,7 @@ def check_work(design: Design, *, in_haste: bool = False) -> None:
             [
                 Violation(
                     pointer="/mission",
-                    message="the legs of all branches, in so many ignitions, are more work than one request may ask",
+                    message="asks for more work than one request may: the legs of all branches, in so many ignitions",
                     read=f"{work} steps: (1 + branches) (legs + splits * manoeuvres) (2 + engines + loads of a stage)",
                     expected=f"at most {MOST_WORK} steps: fewer branches, legs or splits",
                 )

@@ -11,6 +11,7 @@ from msgspec import Struct
 
 from burntally.model.errors import UncomputableError, Violation
 from burntally.model.mission import Hyperbola, Location, Orbit, OrbitLocation
+from burntally.model.names import unknown_name
 from burntally_service.bodies import Body
 from burntally_service.kernels.ellipses import Place, apsis_place, ellipse_place
 from burntally_service.kernels.orbits import opposite_apsis, semi_major_axis
@@ -92,10 +93,7 @@ def body_named(name: str, bodies: Mapping[str, Body], *, pointer: str) -> Body:
         If there is no such body; it names those that there are.
     """
     if name not in bodies:
-        expected = ", ".join(bodies)
-        raise UncomputableError(
-            [Violation(pointer=pointer, message="no body has this name", read=name, expected=expected)]
-        )
+        raise UncomputableError([unknown_name("body", name, known=bodies, pointer=pointer)])
     return bodies[name]
 
 
@@ -117,8 +115,8 @@ def check_start(start: Location, bodies: Mapping[str, Body], *, pointer: str) ->
         With the pointer of the field that is at fault.
     """
     if start.body is None:
-        violation = Violation(pointer=f"{pointer}/body", message="an orbit to start from needs its body")
-        raise UncomputableError([violation])
+        expected = "the body that the orbit is about"
+        raise UncomputableError([Violation(pointer=f"{pointer}/body", message="is missing", expected=expected)])
     body = body_named(start.body, bodies, pointer=f"{pointer}/body")
     if isinstance(start, OrbitLocation):
         size_of(start, body, pointer=pointer)
@@ -261,7 +259,7 @@ def _size_by_period(r_peri: float, period: float, body: Body, pointer: str) -> S
     """Ellipse with a periapsis and a period."""
     r_apo = opposite_apsis(semi_major_axis(body.mu, period), r_peri)
     if not r_peri <= r_apo < math.inf:
-        message = "no orbit with this period has its periapsis so high"
+        message = "is too short for an orbit whose periapsis is so high"
         wanted = "a longer period, or a lower periapsis"
         raise UncomputableError([Violation(pointer=pointer, message=message, read=f"{period:g} s", expected=wanted)])
     return Size(r_peri=r_peri, r_apo=r_apo)
@@ -271,7 +269,7 @@ def _radius(altitude: float, body: Body, pointer: str) -> float:
     """Radius at an altitude, which must not be at the centre of the body or beyond."""
     r = body.radius_at(altitude)
     if not r > 0.0:
-        message = f"this is at or beyond the centre of {body.name}, whose radius is {body.radius:g} m"
+        message = f"is at or beyond the centre of {body.name}, whose radius is {body.radius:g} m"
         wanted = f"above {-body.radius:g} m"
         raise UncomputableError([Violation(pointer=pointer, message=message, read=f"{altitude:g} m", expected=wanted)])
     return r

@@ -217,8 +217,10 @@ def _reach(r_max: float, body: Body) -> tuple[Caution, ...]:
 def _check_strategy(leg: Transfer, pointer: str) -> None:
     """Refuse a bi-elliptic transfer that nothing bounds: the farther it goes, the cheaper it seems."""
     if leg.strategy == "bielliptic" and leg.apoapsis_max is None and leg.time_limit is None:
-        message = "a bi-elliptic transfer needs apoapsis_max or time_limit"
-        raise UncomputableError([Violation(pointer=f"{pointer}/strategy", message=message, read="bielliptic")])
+        message = "is bi-elliptic, and nothing bounds how far out it goes"
+        wanted = "apoapsis_max or time_limit beside it"
+        pointer = f"{pointer}/strategy"
+        raise UncomputableError([Violation(pointer=pointer, message=message, read='"bielliptic"', expected=wanted)])
 
 
 def _lost(message: str, suffix: str = "") -> PlanFinding:

@@ -179,7 +179,8 @@ def _check_engines(engines: Sequence[LitEngine], stage: int) -> None:
     violations = [
         Violation(
             pointer=f"/vehicle/stages/{stage}/engines/{engine.index}/isp_sea_level",
-            message="the specific impulse at sea level is above that in vacuum",
+            message="is above the specific impulse in vacuum",
+            expected="at most isp",
         )
         for engine in engines
         if engine.area_exit is not None and math.isnan(engine.area_exit)
