@@ -149,7 +149,10 @@ def _take_propellant(tables: Tables, books: Books, leg: int, order: tuple[int, f
         return
     there = books.usable[load] + books.held[load] + books.residual[load]
     kg = max(0.0, row.capacity - there) if wanted == math.inf else wanted
-    _tell(tables, books, (LINE_TAKEN, leg, load), (there, kg))
+    mass, clock = books.branch_mass[branch], books.branch_clock[branch]
+    # The cell before the last tells what is filled up from a mass that is taken on whatever is there.
+    filled = 1 if wanted == math.inf and there <= row.capacity else 0
+    write_line(books, (LINE_TAKEN, leg, load), (0, there, kg, mass, clock, filled, 0.0))
     residual = row.residual_fraction * kg
     books.residual[load] += residual
     books.usable[load] += kg - residual
@@ -181,5 +184,8 @@ def _dock(tables: Tables, books: Books, leg: int, order: tuple[int, float]) -> N
         books.where[stage] = branch
         books.branch_mass[branch] += mass
         books.branch_mass[docked] -= mass
-    if moved == 0:
+    if moved > 0:
+        # All that was left has come aboard, and nothing weighs nothing, whatever rounding has left over.
+        books.branch_mass[docked] = 0.0
+    else:
         _tell(tables, books, (LINE_ABSENT, leg, tables.branches[docked].part), (0.0, 0.0))

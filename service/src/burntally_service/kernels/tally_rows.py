@@ -77,10 +77,12 @@ MASK: Final = 8
 SPARE: Final = 9
 LINE_WIDTH: Final = 10
 
-# What could go on after the payer of a mark: nothing, the next stage alone, or more than the books can tell.
+# What could go on after the payer of a mark: nothing, the next stage alone, or more than the books can tell; or that
+# what is spent below the payer drops before it pays.
 NO_MORE: Final = 0
 NEXT_STAGE: Final = 1
 UNCLEAR: Final = 2
+DROPS: Final = 3
 
 # Why something is owed.
 PAID: Final = 0

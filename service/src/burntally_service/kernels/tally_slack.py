@@ -11,6 +11,7 @@ from typing import Final
 
 from burntally_service.kernels.tally_rows import (
     DELTA_V,
+    DROPS,
     KG,
     KIND,
     LEG,
@@ -26,10 +27,10 @@ from burntally_service.kernels.tally_rows import (
     LINES,
     MASK,
     MASS,
+    NEXT_STAGE,
     NO_MORE,
     PART,
     SPARE,
-    UNCLEAR,
     Books,
     Tables,
 )
@@ -122,7 +123,7 @@ def _slack_at(tables: Tables, books: Books, walk: list[list[float]], at: tuple[i
         return 0.0
     state = walk[STATE][stage]
     reach = books.spare[mark]
-    if state >= MIXED or (state == KNOWN and walk[MASKS][stage] != books.spare_mask[mark]):
+    if books.spare_more[mark] == DROPS or _is_mixed(walk, stage, books.spare_mask[mark]):
         return SEARCH
     tail = 0.0
     if state == KNOWN and walk[REACH][stage] <= reach:
@@ -155,7 +156,7 @@ def _tail_after(tables: Tables, books: Books, walk: list[list[float]], at: tuple
     mark, leg, state = at
     if books.spare_more[mark] == NO_MORE:
         return 0.0
-    if books.spare_more[mark] == UNCLEAR or state != NOTHING:
+    if books.spare_more[mark] != NEXT_STAGE or state != NOTHING:
         # What the payer still draws later, out of a tank that is filled by then, would fall to the next stage too.
         return SEARCH
     stage = books.next_stage[mark]
@@ -216,13 +217,21 @@ def _mix(walk: list[list[float]], stage: int) -> None:
 
 
 def _walk_filling(tables: Tables, books: Books, walk: list[list[float]], start: int) -> None:
-    """Forget what a stage owes to later draws where its tank is filled: what was lost before is made up for."""
+    """Forget what later draws need of a stage where its tank is filled up: what was lost before is made up for."""
     row = tables.loads[int(books.lines[start + PART])]
-    if books.lines[start + DELTA_V] + books.lines[start + KG] < row.capacity:
+    state = walk[STATE][row.stage]
+    if state <= BUSY or state == DOCKED:
+        return
+    if books.lines[start + MASK] <= 0.0:
+        if books.lines[start + DELTA_V] > row.capacity:
+            # What is lost before is made up for only as far as it leaves room.
+            _mix(walk, row.stage)
         return
     stage = tables.stages[row.stage]
     alone = stage.end_load - stage.first_load == 1
-    walk[STATE][row.stage] = NOTHING if alone else MIXED
+    # Busy, since the later draws fall to another stage if this one runs dry and drops before it is filled. A residual
+    # share of what makes up for a loss never burns.
+    walk[STATE][row.stage] = BUSY if alone and row.residual_fraction <= 0.0 else MIXED
     walk[TAIL][row.stage] = 0.0
 
 

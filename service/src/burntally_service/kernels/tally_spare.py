@@ -2,7 +2,8 @@
 
 from burntally_service.kernels.tally_books import stage_mass
 from burntally_service.kernels.tally_flow import light_flow, lit_mask, spare_of
-from burntally_service.kernels.tally_rows import NEXT_STAGE, UNCLEAR, Books, Tables
+from burntally_service.kernels.tally_rows import DROPS, NEXT_STAGE, UNCLEAR, Books, Tables
+from burntally_service.kernels.tally_stack import lowest_spent
 
 __all__ = ["note_spare"]
 
@@ -67,6 +68,9 @@ def note_spare(tables: Tables, books: Books, leg: int, mark: int) -> None:
             books.spare_mass[mark] = books.branch_mass[row.branch]
             books.spare_stage[mark] = stage
             books.spare_mask[mark] = mask
+            if below and lowest_spent(tables, books, leg, position) >= 0:
+                books.spare_more[mark] = DROPS
+                return
             if below or _burns_on(tables, burner, first_dry):
                 books.spare_more[mark] = UNCLEAR
 

@@ -13,7 +13,7 @@ from burntally_service.kernels.tally_rows import (
     Tables,
 )
 
-__all__ = ["cause_of", "detach", "shed"]
+__all__ = ["cause_of", "detach", "lowest_spent", "shed"]
 
 
 def _is_spent(tables: Tables, books: Books, stage: int) -> bool:
@@ -64,6 +64,44 @@ def shed(tables: Tables, books: Books, leg: int, payer_position: int) -> None:
     >>> tables = Tables(*([],) * 12, [LegRow(0, 0, 1, 0, -1, 0.0, 0.0, 0.0, 0, 0, 0)], [])
     >>> shed(tables, blank_books(tables, 0), 0, 0)
     """
+    position = lowest_spent(tables, books, leg, payer_position)
+    while position >= 0:
+        # One after another: a spent stage leaves by itself, and its branch holds none that left before.
+        detach(tables, books, leg, position)
+        position = lowest_spent(tables, books, leg, payer_position)
+
+
+def lowest_spent(tables: Tables, books: Books, leg: int, payer_position: int) -> int:
+    """Find the lowest spent stage that separates before a payer burns.
+
+    Parameters
+    ----------
+    tables : Tables
+        What is tallied.
+    books : Books
+        The books as they stand.
+    leg : int
+        The leg that is being paid, [-].
+    payer_position : int
+        Place of the payer in `Books.order`; only stages below it leave, [-].
+
+    Returns
+    -------
+    int
+        Place of the stage in `Books.order`, [-]; -1 if none separates.
+
+    References
+    ----------
+    .. [1] The project's bookkeeping rule P3; no published source.
+
+    Examples
+    --------
+    >>> from burntally_service.kernels.tally_books import blank_books
+    >>> from burntally_service.kernels.tally_rows import LegRow
+    >>> tables = Tables(*([],) * 12, [LegRow(0, 0, 1, 0, -1, 0.0, 0.0, 0.0, 0, 0, 0)], [])
+    >>> lowest_spent(tables, blank_books(tables, 0), 0, 0)
+    -1
+    """
     branch = tables.legs[leg].branch
     stages = tables.n_stages
     for position in range(payer_position):
@@ -72,12 +110,12 @@ def shed(tables: Tables, books: Books, leg: int, payer_position: int) -> None:
             continue
         # What must stay keeps aboard all that stands above it, so the search upward ends here.
         if tables.stages[stage].by_leg or tables.last_named[branch * stages + stage] > leg:
-            break
+            return -1
         if _is_spent(tables, books, stage):
-            # One after another: a spent stage leaves by itself, and its branch holds none that left before.
-            detach(tables, books, leg, position)
-        elif tables.stages[stage].first_engine < tables.stages[stage].end_engine:
-            break
+            return position
+        if tables.stages[stage].first_engine < tables.stages[stage].end_engine:
+            return -1
+    return -1
 
 
 def detach(tables: Tables, books: Books, leg: int, highest: int) -> None:
