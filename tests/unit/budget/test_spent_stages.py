@@ -8,6 +8,7 @@ import pytest
 from burntally.model.budget import Budget
 from burntally.model.design import Design
 from burntally_service.budget import draw_up
+from tests.unit.budget.designs import budget_of, design
 
 
 def stage(name: str, load: float) -> dict[str, Any]:
@@ -48,3 +49,12 @@ def test_each_flies_alone(budget: Budget, name: str) -> None:
 
 def test_every_branch_closes(budget: Budget) -> None:
     assert [book.closes for book in budget.branches] == [True, True, True]
+
+
+def test_a_stage_that_drops_for_a_reserve_after_kilograms_alone_leaves_in_the_last_leg() -> None:
+    # No leg is charged a delta-v, so the open account holds the reserve at the end; the lower stage is dry by then.
+    gas = {"kind": "allowance", "category": "gas", "propellant": 197.5, "paid_by": ["lower"]}
+    plain = design([gas, gas], stage("lower", 400.0), stage("upper", 400.0), reserve={"delta_v": 10.0})
+    separated = budget_of(plain).stages[0].separated
+    assert separated is not None
+    assert separated.leg == 1

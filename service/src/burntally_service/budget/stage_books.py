@@ -95,7 +95,8 @@ def _separated(drawn: Drawn, stage: int) -> Separated | None:
     branch, row = drawn.lowered.legs[line.leg]
     return Separated(
         branch=drawn.branch_name(branch),
-        leg=row.index if row else 0,
+        # A reserve that follows no leg is held at the end of the branch, after the last one.
+        leg=row.index if row else drawn.legs_of(branch)[-1][1].index,
         time=line.time,
         left_behind=stage_left_behind(drawn, stage),
     )
