@@ -115,6 +115,19 @@ def test_what_arithmetic_cannot_do_has_no_answer_and_is_logged(
     ]
 
 
+@pytest.mark.parametrize("operation", ["create_budget", "compute_performance"])
+@pytest.mark.parametrize("delta_v", [100.0, 9e5])
+def test_a_stage_that_would_burn_away_to_nothing_is_named(operation: str, delta_v: float) -> None:
+    stage = {"name": "tug", "dry_mass": 0, "propellants": [{"mass": 900}], "engines": [{"thrust": 400, "isp": 311}]}
+    leg = {"kind": "allowance", "delta_v": delta_v, "category": "navigation"}
+    plain: dict[str, object] = {"vehicle": {"name": "tug", "stages": [stage]}}
+    if operation == "create_budget":
+        plain |= {"format": 1, "mission": {"start": {"kind": "orbit", "body": "earth", "altitude": 4e5}, "legs": [leg]}}
+    with pytest.raises(UncomputableError) as caught:
+        answer(operation, msgspec.json.encode(plain))
+    assert [violation.pointer for violation in caught.value.violations] == ["/vehicle/stages/0/dry_mass"]
+
+
 def test_any_other_failure_stays_what_it_is(monkeypatch: pytest.MonkeyPatch) -> None:
     failing_with(ValueError("no such thing"), monkeypatch)
     with pytest.raises(ValueError, match="no such thing"):

@@ -302,7 +302,10 @@ def answer(
         raise InconsistentError(_all_faults(error.request or request, error)) from error
     except UncomputableError as error:
         raise UncomputableError(_all_faults(request, error)) from error
-    return encode(told, media_type=accept)
+    try:
+        return encode(told, media_type=accept)
+    except UncomputableError as error:
+        raise _named(request, error) from error
 
 
 def _all_faults(request: object, error: InconsistentError | UncomputableError) -> list[Violation]:
@@ -316,16 +319,27 @@ def _computed(operation: Operation, request: Struct | None, *, in_haste: bool) -
     try:
         return operation.call(request, in_haste=in_haste)
     except ArithmeticError as error:
-        raise _without_end(error) from error
+        raise _without_end(request, error) from error
     except ValueError as error:
         if str(error) != _OUT_OF_DOMAIN:
             raise
-        raise _without_end(error) from error
+        raise _without_end(request, error) from error
 
 
-def _without_end(error: Exception) -> UncomputableError:
-    # It is logged all the same: of a sane request it would be a fault of ours.
-    _LOG.warning("arithmetic failed", exc_info=error)
+def _without_end(request: object, error: Exception) -> UncomputableError:
     message = "somewhere on the way a quantity vanishes or grows beyond all bounds, so there is no finite answer"
     wanted = "masses and thrusts above zero by more than a rounding, so that each burn ends at some speed"
-    return UncomputableError([Violation(pointer="", message=message, expected=wanted)])
+    unnamed = UncomputableError([Violation(pointer="", message=message, expected=wanted)])
+    named = _named(request, unnamed)
+    if named is unnamed:
+        # It is logged all the same: of a sane request it would be a fault of ours.
+        _LOG.warning("arithmetic failed", exc_info=error)
+    return named
+
+
+def _named(request: object, error: UncomputableError) -> UncomputableError:
+    """Name the field of the request that most likely left no finite answer, if there is one."""
+    from burntally_service.budget.faults import weightless
+
+    found = weightless(request)
+    return error if found is None else UncomputableError([found])

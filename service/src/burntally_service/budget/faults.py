@@ -15,8 +15,9 @@ from burntally.model.operations import PerformanceRequest, TransferRequest
 from burntally_service.bodies import catalogue, system_of
 from burntally_service.budget.rules import resolve
 from burntally_service.legs import check_start
+from burntally_service.vehicle.masses import items_of
 
-__all__ = ["all_faults", "surface_gravity"]
+__all__ = ["all_faults", "surface_gravity", "weightless"]
 
 
 def all_faults(request: object, known: tuple[Violation, ...]) -> list[Violation]:
@@ -44,6 +45,34 @@ def surface_gravity(name: str) -> float:
     if body is None:
         raise InconsistentError([unknown_name("body", name, known=catalogue(), pointer="/gravity_of")])
     return body.mu / (body.radius * body.radius)
+
+
+def weightless(request: object) -> Violation | None:
+    """Tell of the topmost stage if it would burn away to nothing, which no speed belongs to.
+
+    Parameters
+    ----------
+    request
+        A request that arithmetic could not end.
+
+    Returns
+    -------
+    Violation or None
+        None where the topmost stage has a dry mass or carries something, so that the reason is another one.
+    """
+    if not isinstance(request, Design | PerformanceRequest):
+        return None
+    top = len(request.vehicle.stages) - 1
+    stage = request.vehicle.stages[top]
+    carried = sum(item.mass * item.count for payload in request.vehicle.payloads for item in items_of(payload.mass))
+    if carried > 0.0 or any(item.mass > 0.0 for item in items_of(stage.dry_mass)):
+        return None
+    return Violation(
+        pointer=f"/vehicle/stages/{top}/dry_mass",
+        message="is nothing, and so is what the stage carries: burned empty it would weigh nothing, at no finite speed",
+        read="0",
+        expected="a mass above zero, or a payload",
+    )
 
 
 def _looked_up(request: object) -> Iterator[Violation]:
