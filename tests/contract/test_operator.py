@@ -149,8 +149,8 @@ def test_a_trusted_proxy_tells_the_caller(lines: list[str]) -> None:
     assert (line["client"], line["scheme"]) == ("203.0.113.9", "https")
 
 
-def test_a_caller_who_hangs_up_is_counted_out(fresh: Edge, lines: list[str]) -> None:
-    async def leave() -> None:
+def test_a_request_that_a_stopping_server_cuts_off_is_refused_and_counted_out(fresh: Edge, lines: list[str]) -> None:
+    async def cut_off() -> None:
         async def receive() -> Any:
             return await asyncio.Event().wait()
 
@@ -163,8 +163,9 @@ def test_a_caller_who_hangs_up_is_counted_out(fresh: Edge, lines: list[str]) -> 
         task.cancel()
         await asyncio.gather(task, return_exceptions=True)
 
-    asyncio.run(leave())
-    assert json.loads(lines[0])["status"] is None
+    asyncio.run(cut_off())
+    line = json.loads(lines[0])
+    assert (line["status"], line["problem"]) == (503, "not-ready")
     # The one who asks for the metrics is in flight himself.
     assert value(fresh, "burntally_http_requests_in_flight") == 1
 

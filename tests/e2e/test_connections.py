@@ -1,6 +1,7 @@
 """Connections that send slowly, too much, or nonsense are cut off, each with a problem where one can be told."""
 
 import contextlib
+import re
 import socket
 import time
 from collections.abc import Iterator
@@ -10,6 +11,7 @@ import pytest
 from burntally.model.decode import JSON, decode
 from burntally.model.operations import Problem
 from burntally_service.api.examples import example_bytes
+from burntally_service.operations import answer
 from tests.e2e.serving import Served, head_of, long_design, rest_of, serving
 
 SMALL = example_bytes("create_budget")
@@ -22,6 +24,10 @@ LATE_S = 2.5
 def served() -> Iterator[Served]:
     with serving(head_timeout_s=TIMEOUT_S, body_timeout_s=TIMEOUT_S, most_connections=4) as served:
         yield served
+
+
+def example_answer() -> bytes:
+    return answer("create_budget", SMALL)
 
 
 def problem_of(told: bytes) -> tuple[int, Problem]:
@@ -130,6 +136,55 @@ def test_requests_may_follow_one_another_without_waiting(served: Served) -> None
             2 * (head_of(SMALL) + SMALL) + b"GET /healthz HTTP/1.1\r\nHost: x\r\nConnection: close\r\n\r\n"
         )
         assert rest_of(connection).count(b"HTTP/1.1 200") == 3
+
+
+@pytest.mark.parametrize("kind", [b"h2c", b"websocket"])
+def test_an_offer_of_another_protocol_changes_nothing(served: Served, kind: bytes) -> None:
+    offer = b"Connection: Upgrade\r\nUpgrade: " + kind + b"\r\n\r\n"
+    last = b"GET /healthz HTTP/1.1\r\nHost: x\r\nConnection: close\r\n\r\n"
+    with served.connect() as connection:
+        connection.sendall(2 * (head_of(SMALL)[:-2] + offer + SMALL) + b"GET /healthz HTTP/1.1\r\nHost: x\r\n" + offer)
+        connection.sendall(last)
+        told = rest_of(connection)
+    assert told.count(b"HTTP/1.1 200") == 4
+    assert told.count(example_answer()) == 2
+
+
+def test_a_body_may_come_after_an_offer_and_in_chunks(served: Served) -> None:
+    offer = b"Connection: close, Upgrade\r\nUpgrade: h2c\r\nTransfer-Encoding: chunked\r\n\r\n"
+    head = head_of(SMALL).partition(b"Content-Length")[0]
+    with served.connect() as connection:
+        connection.sendall(head + offer)
+        time.sleep(0.1)
+        connection.sendall(b"%x\r\n" % len(SMALL) + SMALL + b"\r\n0\r\n\r\n")
+        assert rest_of(connection).endswith(example_answer())
+
+
+@pytest.mark.parametrize("follows", [b"GET /heal", head_of(SMALL) + SMALL[:10]], ids=["head", "body"])
+def test_what_follows_slowly_does_not_spoil_an_answer(follows: bytes) -> None:
+    slow = long_design(legs=130, splits=1)
+    # Short enough to pass twice while the first is being answered.
+    with (
+        serving(head_timeout_s=0.2, body_timeout_s=0.2, compute_timeout_s=60) as served,
+        served.connect() as connection,
+    ):
+        connection.sendall(head_of(slow) + slow + follows)
+        told = rest_of(connection)
+    assert told.startswith(b"HTTP/1.1 200")
+    assert told.count(b"HTTP/1.1 408") == 1
+
+
+def test_answers_keep_the_order_of_requests_where_too_many_are_in_flight() -> None:
+    slow = long_design(legs=60, splits=1)
+    with serving(most_in_flight=1, compute_timeout_s=60) as served, served.connect() as connection:
+        connection.sendall(2 * (head_of(slow) + slow))
+        told = connection.recv(1)
+        # The second is being answered, and keeps the only place there is.
+        assert served.ask(SMALL).code == "overloaded"
+        connection.sendall(b"GET /healthz HTTP/1.1\r\nHost: x\r\nConnection: close\r\n\r\n")
+        told += rest_of(connection)
+    assert re.findall(rb"HTTP/1\.1 (\d+)", told) == [b"200", b"200", b"200"]
+    assert told.endswith(b'{"status":"ok"}')
 
 
 def test_more_in_flight_than_may_be_is_refused_until_there_is_room() -> None:

@@ -10,7 +10,7 @@ from concurrent.futures import ThreadPoolExecutor
 import msgspec
 
 from burntally_service.api.examples import example_bytes
-from tests.e2e.serving import Served, long_design, reply_of, serving
+from tests.e2e.serving import Served, head_of, long_design, reply_of, rest_of, serving
 
 SMALL = example_bytes("create_budget")
 CALLERS = 8
@@ -90,3 +90,13 @@ def test_what_cannot_be_finished_is_refused() -> None:
     assert (reply.status, reply.code) == (503, "not-ready")
     assert msgspec.json.decode(reply.content)["detail"]
     assert took < 5
+
+
+def test_whose_body_is_still_on_its_way_is_refused() -> None:
+    with serving(body_timeout_s=60, drain_timeout_s=1) as served, served.connect() as connection:
+        connection.sendall(head_of(SMALL) + SMALL[:-10])
+        time.sleep(0.2)
+        stopped(served)
+        head, _, body = rest_of(connection).partition(b"\r\n\r\n")
+    assert head.startswith(b"HTTP/1.1 503")
+    assert msgspec.json.decode(body)["code"] == "not-ready"

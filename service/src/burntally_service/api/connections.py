@@ -14,10 +14,12 @@ from dataclasses import dataclass, field
 from functools import cache
 from typing import Any, Final, Literal
 
+import httptools
 from uvicorn.config import Config
 from uvicorn.protocols.http.httptools_impl import STATUS_LINE, HttpToolsProtocol
 from uvicorn.server import ServerState
 
+from burntally_service.api.offers import Declined
 from burntally_service.api.problems import PROBLEM_JSON, ProblemError, refusal_of
 from burntally_service.api.settings import Settings
 
@@ -141,16 +143,12 @@ class _Connection(asyncio.BufferedProtocol, HttpToolsProtocol):
         """Read on, and see that what is still missing comes in time."""
         if self._is_over:
             return
-        super().data_received(data)
-        if self.transport.is_closing() or self._is_over:
-            self._disarm()
-        elif self._waits == "body":
-            self._arm("body", self.bounds.settings.body_timeout_s + _LATE_S)
-        elif self._waits == "head" or (self._is_idle() and self.timeout_keep_alive_task is None):
-            # Line ends before a request are no request, and keep nothing open.
-            self._arm("head", self.bounds.settings.head_timeout_s)
-        else:
-            self._disarm()
+        self._unset_keepalive_if_required()
+        try:
+            self._feed(data)
+        except httptools.HttpParserError:
+            self.send_400_response("this is no HTTP request")
+        self._watch()
 
     def on_message_begin(self) -> None:
         """Begin a head."""
@@ -184,6 +182,9 @@ class _Connection(asyncio.BufferedProtocol, HttpToolsProtocol):
 
     def on_message_complete(self) -> None:
         """Count a request that is whole."""
+        if self.parser.should_upgrade():
+            # Its body, if it has one, is still to come: see `offers`.
+            return
         self._waits = "nothing"
         if self._is_refused:
             return
@@ -193,9 +194,13 @@ class _Connection(asyncio.BufferedProtocol, HttpToolsProtocol):
         super().on_message_complete()
 
     def on_response_complete(self) -> None:
-        """Make room for the next one."""
-        self._count_out()
+        """Make room for the next one, unless it has been sent already: then that one is answered in the same place."""
+        if not self.pipeline:
+            self._count_out()
         super().on_response_complete()
+        if self._waits == "head":
+            self._unset_keepalive_if_required()
+        self._watch()
 
     def send_400_response(self, msg: str) -> None:
         """Tell what is no HTTP request as every other problem is told; `msg` is the server's own word for it."""
@@ -242,8 +247,30 @@ class _Connection(asyncio.BufferedProtocol, HttpToolsProtocol):
     def _should_upgrade(self) -> bool:
         return False
 
-    def _unsupported_upgrade_warning(self) -> None:
-        """Say nothing: an upgrade is an offer, and it was not taken."""
+    def _feed(self, data: bytes) -> None:
+        """Read on, past offers to go on in another protocol."""
+        while data:
+            try:
+                self.parser.feed_data(data)
+            except httptools.HttpParserUpgrade as offer:
+                data = data[offer.args[0] :]
+            else:
+                return
+            declined = Declined(self)
+            self.parser = httptools.HttpRequestParser(declined)
+            declined.go_on(self.parser, self.headers)
+
+    def _watch(self) -> None:
+        """Set the deadline of what is missing; what follows a request that is being answered may take its time."""
+        if self.transport.is_closing() or self._is_over or self._is_counted:
+            self._disarm()
+        elif self._waits == "body":
+            self._arm("body", self.bounds.settings.body_timeout_s + _LATE_S)
+        elif self._waits == "head" or (self._is_idle() and self.timeout_keep_alive_task is None):
+            # Line ends before a request are no request, and keep nothing open.
+            self._arm("head", self.bounds.settings.head_timeout_s)
+        else:
+            self._disarm()
 
     def _is_idle(self) -> bool:
         return self._waits == "nothing" and not self._is_counted
@@ -280,7 +307,9 @@ class _Connection(asyncio.BufferedProtocol, HttpToolsProtocol):
             self.transport.abort()
 
     def _refuse(self, method: str, code: str, detail: str, *, closes: bool = True) -> None:
-        """Write a refusal without asking the application."""
+        """Write a refusal without asking the application, unless the last word has been said."""
+        if self._is_over:
+            return
         self.bounds.refuse(method, code, self.loop)
         head, body = _refusal(code, detail, closes=closes)
         fields = b"".join(b"%s: %s\r\n" % field for field in self.server_state.default_headers)

@@ -1,5 +1,6 @@
 """The edge: what holds for every request, whichever route it takes and whether or not there is one."""
 
+import asyncio
 import logging
 import time
 from collections.abc import Mapping
@@ -19,6 +20,7 @@ from burntally_service.api.metrics import Metrics
 from burntally_service.api.problems import PROBLEM_JSON, PROBLEMS, Refusal, refusal_of
 from burntally_service.api.settings import Settings
 from burntally_service.api.traces import Identity, identity_of
+from burntally_service.api.turns import stopping
 
 __all__ = ["Edge"]
 
@@ -101,6 +103,11 @@ class Edge:
             if not _is_canonical(scope["path"]):
                 raise NotFoundError(())  # noqa: TRY301 - every refusal takes the one way out
             await self.app(scope, receive, reply)
+        except asyncio.CancelledError:
+            # A server whose time to stop is over cancels what is left, as a body that is still on its way.
+            if reply.status is None:
+                await _refuse(stopping(), scope, receive, reply)
+            raise
         except Exception as error:
             if reply.status is not None:
                 raise

@@ -13,7 +13,7 @@ from burntally_service.api.workers import Workers, overloaded
 from burntally_service.haste import NeedsTimeError
 from burntally_service.operations import Operation
 
-__all__ = ["CallerLeftError", "Turns"]
+__all__ = ["CallerLeftError", "Turns", "stopping"]
 
 # A closed form over a short body is done before a worker would have taken it over; a long body may hold up others.
 _INLINE_BODY_BYTES: Final = 16 * 1024
@@ -102,7 +102,7 @@ class Turns:
             await asyncio.gather(*tasks, return_exceptions=True)
         if left.done() and not left.cancelled():
             raise CallerLeftError
-        raise ProblemError("not-ready", "the service is stopping", headers={"Retry-After": "1"})
+        raise stopping()
 
 
 class _Line:
@@ -147,6 +147,11 @@ class _Line:
                 self._left -= 1
         if self._left < _TURNS_PER_PASS:
             self._begin()
+
+
+def stopping() -> ProblemError:
+    """Refuse what will not be answered before the server ends."""
+    return ProblemError("not-ready", "the service is stopping", headers={"Retry-After": "1"})
 
 
 async def _left(receive: _Receive) -> None:
