@@ -6,6 +6,7 @@ import threading
 import time
 from collections.abc import Iterator
 from concurrent.futures import ThreadPoolExecutor
+from pathlib import Path
 
 import pytest
 
@@ -44,9 +45,13 @@ def until(holds: object) -> None:
 
 def is_computing(pid: int) -> bool:
     """Whether a process is taking the processor."""
-    before = cpu_s(pid)
-    time.sleep(0.15)
-    return cpu_s(pid) - before > 0.03
+    try:
+        before = cpu_s(pid)
+        time.sleep(0.15)
+        return cpu_s(pid) - before > 0.03
+    except FileNotFoundError:
+        # A worker that is stopped before it has set itself up ends there.
+        return False
 
 
 def test_a_long_computation_is_stopped_in_time(served: Served) -> None:
@@ -93,6 +98,15 @@ def test_a_worker_that_dies_is_told_and_replaced(served: Served) -> None:
         reply = asked.result()
     assert (reply.status, reply.code) == (503, "worker-lost")
     assert served.ask(long_design(legs=20, splits=1)).status == 200
+
+
+def test_a_worker_ends_with_a_server_that_is_killed() -> None:
+    with serving(compute_timeout_s=60, workers=1) as killed, killed.connect() as connection:
+        connection.sendall(head_of(LONG) + LONG)
+        until(lambda: any(is_computing(pid) for pid in killed.workers()))
+        (worker,) = killed.workers()
+        killed.process.kill()
+        until(lambda: not Path(f"/proc/{worker}/cmdline").exists() or not Path(f"/proc/{worker}/cmdline").read_bytes())
 
 
 def test_workers_are_started_when_first_needed() -> None:

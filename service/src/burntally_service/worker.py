@@ -8,6 +8,7 @@ It reads requests from its standard input and writes answers to its standard out
 """
 
 import importlib
+import logging
 import os
 import signal
 import struct
@@ -33,14 +34,19 @@ STOP: Final = signal.SIGUSR1
 
 # Loaded lazily elsewhere; whatever is forgotten here costs a worker that is stopped while it loads that.
 _LOADED: Final = (
+    "burntally.model._part_checks",
     "burntally.model._walker",
     "burntally.model._units",
+    "burntally.model.names",
     "burntally.model.quantity",
     "burntally_service.budget.faults",
     "burntally_service.budget.work",
     "burntally_service.legs",
     "burntally_service.vehicle.performance",
 )
+
+# From Linux' <sys/prctl.h>; elsewhere a worker ends once it has computed, and finds nobody to tell.
+_SET_PARENT_DEATH_SIGNAL: Final = 1
 
 # The event loop goes first where there are more processes than cores.
 _NICER_BY: Final = 10
@@ -63,10 +69,11 @@ class Answered(Struct, frozen=True, kw_only=True, array_like=True, tag=1):
 
 
 class Refused(Struct, frozen=True, kw_only=True, array_like=True, tag=2):
-    """The request was at fault."""
+    """The request was at fault; `logged` is what the server should log of it, who knows how."""
 
     code: str
     violations: list[Violation]
+    logged: list[str] = []
 
 
 class Failed(Struct, frozen=True, kw_only=True, array_like=True, tag=3):
@@ -83,6 +90,26 @@ class Stopped(Struct, frozen=True, kw_only=True, array_like=True, tag=4):
 
 Outcome = Answered | Refused | Failed | Stopped
 """What one request ends in."""
+
+
+class _Notebook(logging.Handler):
+    """Keeps what is logged until the server can be told: its log has a form, and one writer."""
+
+    def __init__(self) -> None:
+        super().__init__(logging.WARNING)
+        self._lines: list[str] = []
+
+    def emit(self, record: logging.LogRecord) -> None:
+        """Keep a record."""
+        self._lines.append(self.format(record))
+
+    def torn_off(self) -> list[str]:
+        """Hand over what was kept, and begin anew."""
+        lines, self._lines = self._lines, []
+        return lines
+
+
+_NOTEBOOK: Final = _Notebook()
 
 
 class _StoppedError(BaseException):
@@ -109,6 +136,8 @@ def main() -> None:
     signal.signal(signal.SIGINT, signal.SIG_IGN)
     signal.signal(STOP, desk.stop)
     signal.signal(signal.SIGALRM, desk.stop)
+    _end_with_server()
+    logging.basicConfig(handlers=[_NOTEBOOK], force=True)
     os.nice(_NICER_BY)
     _load()
     source = os.fdopen(os.dup(0), "rb")
@@ -117,6 +146,14 @@ def main() -> None:
     os.dup2(2, 1)
     with source, sink:
         _serve(desk, source, sink)
+
+
+def _end_with_server() -> None:
+    """End when the server is killed, which would otherwise leave this process computing for nobody."""
+    if sys.platform == "linux":
+        import ctypes
+
+        ctypes.CDLL(None).prctl(_SET_PARENT_DEATH_SIGNAL, signal.SIGKILL)
 
 
 def _load() -> None:
@@ -145,6 +182,7 @@ def _serve(desk: _Desk, source: BinaryIO, sink: BinaryIO) -> None:
 def _outcome(desk: _Desk, asked: Asked) -> Outcome:
     """Answer one request within its time."""
     modules = len(sys.modules)
+    _NOTEBOOK.torn_off()
     try:
         try:
             desk.is_computing = True
@@ -162,7 +200,7 @@ def _told(asked: Asked) -> Outcome:
     try:
         return Answered(body=answer(asked.operation_id, asked.body, asked.media_type, asked.accept))
     except (ContractError, UncomputableError, NotFoundError) as error:
-        return Refused(code=error.code, violations=list(error.violations))
+        return Refused(code=error.code, violations=list(error.violations), logged=_NOTEBOOK.torn_off())
     except RecursionError:
         return Refused(
             code=ContractError.code,

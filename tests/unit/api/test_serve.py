@@ -1,6 +1,8 @@
 """Serving: what an operator is told before the first request."""
 
 import logging
+import subprocess
+import sys
 
 import pytest
 
@@ -27,3 +29,11 @@ def test_whoever_listens_to_all_without_a_token_is_warned(
     with caplog.at_level(logging.WARNING, logger="burntally.serve"):
         serve._warn(settings)
     assert len([record for record in caplog.records if "BURNTALLY_TOKEN" in record.getMessage()]) == warnings
+
+
+def test_a_stop_that_comes_before_the_server_has_begun_is_no_failure() -> None:
+    code = (
+        "import os, signal; from burntally_service.api import serve; "
+        "serve.create_app = lambda _: os.kill(os.getpid(), signal.SIGTERM); serve.serve(port=0)"
+    )
+    assert subprocess.run([sys.executable, "-c", code], check=False).returncode == 0

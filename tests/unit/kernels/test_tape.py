@@ -75,6 +75,17 @@ def test_an_outcome_may_be_a_number_that_came_in_or_a_constant() -> None:
     assert np.signbit(found[1]).all()
 
 
+@pytest.mark.parametrize("first", [0.0, 4.0])
+def test_a_lane_that_alone_would_raise_is_nan_and_spoils_no_other(first: float) -> None:
+    def inverse_root(number: float) -> float:
+        return 1.0 / (1.0 / number) + math.log(number + 1.0) + math.expm1(number)
+
+    values = [first, 4.0, 0.0, -3.0, 1e3, 1.0]
+    found = through(as_kernel(inverse_root), lanes_of(*((value,) for value in values)))
+    expected = [inverse_root(value) if value in {1.0, 4.0} else math.nan for value in values]
+    assert found == pytest.approx(expected, rel=0.0, nan_ok=True)
+
+
 def test_what_no_outcome_rests_on_is_left_out() -> None:
     def wasteful(numbers: Sequence[Number]) -> Sequence[Number]:
         numbers[0] * numbers[1]

@@ -39,18 +39,20 @@ def serve(host: str | None = None, port: int | None = None) -> None:
     SettingsError
         A setting cannot be read.
     """
+    # There is nothing to finish before there is a server.
+    signal.signal(signal.SIGTERM, _not_begun)
     settings = settings_from(host=host, port=port)
     configure_logging(settings)
     _warn(settings)
-    # The server finishes its work on SIGTERM and then raises the signal once more; by default that would end the
-    # process as killed, and a stop that was asked for is no failure.
-    signal.signal(signal.SIGTERM, _already_stopped)
     app = create_app(settings)
     # What has been imported stays, so the collector need not look at it again; a budget makes thousands of objects and
     # no cycle, so it need not look often either.
     gc.collect()
     gc.freeze()
     gc.set_threshold(_COLLECT_AFTER)
+    # The server finishes its work on SIGTERM and then raises the signal once more; by default that would end the
+    # process as killed, and a stop that was asked for is no failure.
+    signal.signal(signal.SIGTERM, _already_stopped)
     # An interrupt ends the server as a request to stop does, and is raised once more after that.
     with contextlib.suppress(KeyboardInterrupt):
         _server(app, settings).run()
@@ -89,6 +91,11 @@ def _warn(settings: Settings) -> None:
     if not settings.token and not is_loopback(settings.host):
         told = "listening beyond this machine without BURNTALLY_TOKEN: whoever reaches the port is answered"
         _LOG.warning(told, extra={"fields": {"host": settings.host}})
+
+
+def _not_begun(*_: object) -> None:
+    """End on a signal that comes before the server has begun."""
+    raise SystemExit
 
 
 def _already_stopped(number: int, frame: FrameType | None) -> None:

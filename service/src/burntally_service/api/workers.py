@@ -134,6 +134,9 @@ class Workers:
                 _LOG.warning("a worker was lost", extra={"fields": {"operation": operation_id, "why": repr(error)}})
                 detail = "the process that computed the answer ended"
                 raise ProblemError("worker-lost", detail, headers=_retry_after(_RETRY_AFTER_S)) from None
+        if isinstance(outcome, Refused):
+            for line in outcome.logged:
+                _LOG.warning(line, extra={"fields": {"operation": operation_id}})
         return self._read(outcome)
 
     async def close(self) -> None:

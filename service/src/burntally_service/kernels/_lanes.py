@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
+from contextlib import suppress
 from typing import TYPE_CHECKING, Any, Final
 
 import numpy as np
@@ -41,25 +42,36 @@ def in_lanes(kernel: Callable[..., Any], run: Run, columns: NDArray[np.float64])
     Returns
     -------
     numpy.ndarray
-        Outcomes, shape (n_outcomes, n_lanes).
+        Outcomes, shape (n_outcomes, n_lanes); NaN in a lane for which the kernel alone would raise.
     """
     lanes = columns.shape[1]
     waiting = np.arange(lanes, dtype=np.int64)
     outcomes = np.empty((0, lanes))
     for _ in range(MOST_WAYS):
         if not len(waiting):
-            break
+            return outcomes
         here = columns if len(waiting) == lanes else columns[:, waiting]
-        tape = record(lambda numbers: run(recording(kernel), numbers), [float(cell) for cell in here[:, 0]])
+        tape = _recorded(kernel, run, here[:, 0])
+        if tape is None:
+            waiting = waiting[1:]
+            continue
+        if outcomes.shape[0] != tape.n_outcomes:
+            outcomes = np.full((tape.n_outcomes, lanes), np.nan)
         found, kept = _replayed(tape, here)
-        if len(waiting) == lanes:
-            outcomes = found
-        else:
-            outcomes[:, waiting[kept]] = found[:, kept]
+        outcomes[:, waiting[kept]] = found[:, kept]
         waiting = waiting[~kept]
     for lane in waiting:
-        outcomes[:, lane] = run(kernel, [float(cell) for cell in columns[:, lane]])
+        with suppress(ArithmeticError, ValueError):
+            outcomes[:, lane] = run(kernel, [float(cell) for cell in columns[:, lane]])
     return outcomes
+
+
+def _recorded(kernel: Callable[..., Any], run: Run, lane: NDArray[np.float64]) -> Tape | None:
+    """Record the way of a lane; None where it has no end."""
+    try:
+        return record(lambda numbers: run(recording(kernel), numbers), [float(cell) for cell in lane])
+    except (ArithmeticError, ValueError):
+        return None
 
 
 def _replayed(tape: Tape, columns: NDArray[np.float64]) -> tuple[NDArray[np.float64], NDArray[np.bool_]]:

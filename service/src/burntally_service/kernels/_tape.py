@@ -7,6 +7,7 @@ place where their rules are written.
 """
 
 import math
+import sys
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 from types import FunctionType, SimpleNamespace
@@ -32,6 +33,9 @@ IS_EQUAL: Final = 11
 _INPUT: Final = -1
 _CONSTANT: Final = -2
 _FIRST_GUARD: Final = IS_LESS
+
+_OUT_OF_DOMAIN: Final = "math domain error"
+_MOST_EXPONENT: Final = math.log(sys.float_info.max)
 
 _recordings: dict[FunctionType, Callable[..., Any]] = {}
 
@@ -125,9 +129,11 @@ class Number:
         return self.recorder.result(MULTIPLY, (other, self), _value(other) * self.value)
 
     def __truediv__(self, other: object) -> "Number":
+        _must_differ(other, 0.0)
         return self.recorder.result(DIVIDE, (self, other), self.value / _value(other))
 
     def __rtruediv__(self, other: object) -> "Number":
+        _must_differ(self, 0.0)
         return self.recorder.result(DIVIDE, (other, self), _value(other) / self.value)
 
     def __neg__(self) -> "Number":
@@ -159,14 +165,24 @@ def _value(operand: object) -> float:
     return operand.value if isinstance(operand, Number) else float(operand)  # type: ignore[arg-type] # as above
 
 
+def _must_differ(operand: object, value: float) -> None:
+    """Raise where Python would, and let a tape hold for no lane where it would."""
+    if operand == value:
+        raise ZeroDivisionError
+
+
 def _log(operand: object) -> object:
     if isinstance(operand, Number):
+        if operand <= 0.0:
+            raise ValueError(_OUT_OF_DOMAIN)
         return operand.recorder.result(LOG, (operand, operand), math.log(operand.value))
     return math.log(_value(operand))
 
 
 def _expm1(operand: object) -> object:
     if isinstance(operand, Number):
+        if operand > _MOST_EXPONENT:
+            raise OverflowError
         return operand.recorder.result(EXPM1, (operand, operand), math.expm1(operand.value))
     return math.expm1(_value(operand))
 
