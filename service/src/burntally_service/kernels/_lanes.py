@@ -55,9 +55,11 @@ def in_lanes(kernel: Callable[..., Any], run: Run, columns: NDArray[np.float64])
         if tape is None:
             waiting = waiting[1:]
             continue
+        found, kept = _replayed(tape, here)
+        if kept.all() and len(kept) == lanes:
+            return found
         if outcomes.shape[0] != tape.n_outcomes:
             outcomes = np.full((tape.n_outcomes, lanes), np.nan)
-        found, kept = _replayed(tape, here)
         outcomes[:, waiting[kept]] = found[:, kept]
         waiting = waiting[~kept]
     for lane in waiting:
