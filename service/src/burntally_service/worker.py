@@ -129,14 +129,20 @@ class _Desk:
             raise _StoppedError
 
 
-def main() -> None:
-    """Answer requests until there are no more of them."""
+def main(server: int) -> None:
+    """Answer requests until there are no more of them.
+
+    Parameters
+    ----------
+    server
+        Process id of who asks.
+    """
     desk = _Desk()
     # An interrupt typed at a terminal reaches the whole group; the server decides when its workers end.
     signal.signal(signal.SIGINT, signal.SIG_IGN)
     signal.signal(STOP, desk.stop)
     signal.signal(signal.SIGALRM, desk.stop)
-    _end_with_server()
+    _end_with_server(server)
     logging.basicConfig(handlers=[_NOTEBOOK], force=True)
     os.nice(_NICER_BY)
     _load()
@@ -148,12 +154,15 @@ def main() -> None:
         _serve(desk, source, sink)
 
 
-def _end_with_server() -> None:
+def _end_with_server(server: int) -> None:
     """End when the server is killed, which would otherwise leave this process computing for nobody."""
     if sys.platform == "linux":
         import ctypes
 
         ctypes.CDLL(None).prctl(_SET_PARENT_DEATH_SIGNAL, signal.SIGKILL)
+    if os.getppid() != server:
+        # It was killed before the signal was asked for.
+        raise SystemExit
 
 
 def _load() -> None:
@@ -220,4 +229,4 @@ def read_outcome(told: bytes) -> Outcome:
 
 
 if __name__ == "__main__":
-    main()
+    main(int(sys.argv[1]))

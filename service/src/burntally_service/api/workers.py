@@ -3,6 +3,7 @@
 import asyncio
 import contextlib
 import logging
+import os
 import sys
 from asyncio.subprocess import PIPE, Process
 from collections.abc import AsyncGenerator
@@ -183,7 +184,9 @@ class Workers:
             if worker.is_alive:
                 return worker
             await worker.end()
-        return _Worker(await asyncio.create_subprocess_exec(*_COMMAND, stdin=PIPE, stdout=PIPE, stderr=None))
+        return _Worker(
+            await asyncio.create_subprocess_exec(*_COMMAND, str(os.getpid()), stdin=PIPE, stdout=PIPE, stderr=None)
+        )
 
     async def _calmed(self, worker: _Worker | None) -> None:
         if worker is not None:
