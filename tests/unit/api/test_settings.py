@@ -60,6 +60,23 @@ def test_a_flag_beats_the_environment() -> None:
     assert settings_from({"BURNTALLY_PORT": "9000"}, port=9001, host=None) == Settings(port=9001)
 
 
+@pytest.mark.parametrize(
+    "name,value,told",
+    [
+        ("port", "abc", "read 'abc'; expected a whole number from 0 to 65535"),
+        ("body_timeout_s", "0", "read '0'; expected a number above 0, to 3600"),
+        ("drain_timeout_s", "8 s", "read '8 s'; expected a number from 0 to 3600"),
+        ("log_format", "xml", "read 'xml'; expected auto or json or text"),
+        ("metrics", "maybe", "read 'maybe'; expected true or false"),
+        ("host", "", "read ''; expected text of 1 to 255 characters"),
+    ],
+)
+def test_a_bad_value_is_told_with_what_was_expected(name: str, value: str, told: str) -> None:
+    with pytest.raises(SettingsError) as caught:
+        settings_from({variable_of(name): value})
+    assert str(caught.value) == f"{variable_of(name)}: {told}"
+
+
 @pytest.mark.parametrize("name", NAMES)
 def test_every_value_may_stand_in_a_file(name: str, tmp_path: Path) -> None:
     values = {"log_level": "error", "log_format": "text", "metrics": "false", "token": SECRET, "host": "::1"}

@@ -269,6 +269,12 @@ def test_a_missing_field_is_told_where_it_should_be() -> None:
     assert pointers(refused(with_value(f"{ENGINE}/isp", ...)).violations) == [f"{ENGINE}/isp"]
 
 
+@pytest.mark.parametrize("pointer", [f"{ENGINE}/isp", "/vehicle/name", "/vehicle/stages", "/mission/start"])
+def test_a_missing_field_is_told_with_what_a_wrong_one_is_told(pointer: str) -> None:
+    missing, wrong = (refused(with_value(pointer, value)).violations[0] for value in (..., True))
+    assert missing.expected == wrong.expected
+
+
 def test_a_missing_kind_is_told_with_the_kinds_that_there_are() -> None:
     told = refused(with_value("/mission/start/kind", ...)).violations[0]
     assert (told.pointer, told.expected) == ("/mission/start/kind", "one of site, orbit, hyperbola")

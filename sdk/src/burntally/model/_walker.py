@@ -67,6 +67,13 @@ def _as_it_is(value: object, _trail: Trail) -> object:
     return value
 
 
+def _wanted_by(reader: Reader) -> str | None:
+    """Say what a reader wants, in its own words: it refuses null, which no field takes that must be there."""
+    refusal = Report()
+    reader(None, refusal)
+    return refusal.violations[0].expected if refusal.violations else "any value but null"
+
+
 class _StructReader:
     """Reads an object as a struct, field by field."""
 
@@ -88,7 +95,7 @@ class _StructReader:
             made[key] = reader(inner, (trail, key))
         for name in self._required:
             if name not in value:
-                tell((trail, name), "is missing", expected=f"field {name} of {self._info.cls.__name__}")
+                tell((trail, name), "is missing", expected=_wanted_by(self._readers[name]))
         return made
 
     def _read_stranger(self, value: object, trail: Trail) -> object:

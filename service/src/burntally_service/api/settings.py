@@ -4,10 +4,10 @@ import os
 from collections.abc import Callable, Mapping
 from difflib import get_close_matches
 from pathlib import Path
-from typing import Annotated, Any, Final, Literal
+from typing import Annotated, Any, Final, Literal, cast
 
 import msgspec
-from msgspec import Meta, Struct
+from msgspec import Meta, Struct, inspect
 
 from burntally_service.api.callers import Networks
 from burntally_service.api.tokens import Tokens
@@ -73,6 +73,7 @@ class Settings(Struct, frozen=True, kw_only=True):
     ] = Networks()
 
 
+_INFO: Final = cast("inspect.StructType", inspect.type_info(Settings))
 _NAMES: Final = [name.upper() for name in Settings.__struct_fields__]
 
 
@@ -133,9 +134,31 @@ def _check(name: str, value: object) -> None:
     try:
         _converted({name: value})
     except msgspec.ValidationError as error:
-        quoted = "" if name in _SECRET else f"{value!r}: "
-        # The variable says where; the library's own words for that would say it once more.
-        raise SettingsError(f"{PREFIX}{name.upper()}: {quoted}{str(error).partition(' - at ')[0]}") from None
+        variable = f"{PREFIX}{name.upper()}"
+        if name in _SECRET:
+            # A reader of our own says what is wrong, without what was read.
+            raise SettingsError(f"{variable}: {str(error).partition(' - at ')[0]}") from None
+        raise SettingsError(f"{variable}: read {value!r}; expected {_wanted(name, error)}") from None
+
+
+def _wanted(name: str, error: msgspec.ValidationError) -> str:
+    """Say what a setting may be, in the words of the contract's own refusals."""
+    kind = next(field.type for field in _INFO.fields if field.name == name)
+    if isinstance(kind, inspect.Metadata):
+        kind = kind.type
+    match kind:
+        case inspect.IntType(ge=least, le=most):
+            return f"a whole number from {least} to {most}"
+        case inspect.FloatType(gt=above, ge=least, le=most):
+            return f"a number from {least} to {most}" if above is None else f"a number above {above}, to {most}"
+        case inspect.LiteralType(values=values):
+            return " or ".join(map(str, values))
+        case inspect.BoolType():
+            return "true or false"
+        case inspect.StrType(min_length=shortest, max_length=longest):
+            return f"text of {shortest} to {longest} characters"
+        case _:
+            return str(error).partition(" - at ")[0]
 
 
 def _converted(given: dict[str, Any]) -> Settings:

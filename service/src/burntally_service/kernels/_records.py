@@ -42,13 +42,9 @@ def records(row_type: type[tuple[Any, ...]], rows: Sequence[tuple[Any, ...]]) ->
     return np.array([tuple(row) for row in rows], dtype=_row_layout(row_type))
 
 
-def _scalar(hint: object) -> str:
-    return "i8" if hint is int else "f8"
-
-
 @functools.cache
 def _row_layout(row_type: type[Any]) -> np.dtype[Any]:
-    """Layout of one row, a struct or a named tuple: eight bytes a field, in its order."""
+    """Layout of one row: a double for each field, in its order."""
     import numpy as np
 
-    return np.dtype([(name, _scalar(hint)) for name, hint in get_type_hints(row_type).items()])
+    return np.dtype([(name, "f8") for name in get_type_hints(row_type)])

@@ -111,6 +111,20 @@ def _lose_lone(tables: Tables, books: Books, engine: int, stage: int) -> float:
     return kg
 
 
+def _payable(purpose: int, amount: float, mass: float, by: tuple[float, float]) -> tuple[float, float, bool]:
+    """What is burned for an amount [kg], what that pays of it, and whether that is all.
+
+    `by` is the exhaust speed [m/s] and the mass that there is to burn [kg].
+    """
+    speed, spare = by
+    # expm1, since one minus an exponential would lose the digits of a small delta-v.
+    wanted = amount if purpose == KILOGRAMS else -mass * math.expm1(-amount / speed)
+    if wanted <= spare:
+        # What suffices pays in full, to the last digit, so that no rounding is owed.
+        return wanted, amount, True
+    return spare, spare if purpose == KILOGRAMS else speed * math.log(mass / (mass - spare)), False
+
+
 def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int, float]) -> float:
     """Burn one stage until a delta-v, or kilograms, are paid or it is dry; return what is left to pay."""
     purpose, amount = order
@@ -122,23 +136,11 @@ def _burn(tables: Tables, books: Books, leg: int, burner: int, order: tuple[int,
         speed = thrust / mdot
         time, first_dry = spare_of(tables, books, stage)
         spare = mdot * time
-        # expm1, since one minus an exponential would lose the digits of a small delta-v.
-        wanted = amount if purpose == KILOGRAMS else -mass * math.expm1(-amount / speed)
-        enough = wanted <= spare
-        kg = wanted if enough else spare
-        # What suffices pays in full, to the last digit, so that no rounding is owed.
-        paid = amount
-        if purpose == KILOGRAMS:
-            paid = kg
-        elif not enough:
-            paid = speed * math.log(mass / (mass - kg))
+        kg, paid, enough = _payable(purpose, amount, mass, (speed, spare))
         _draw_down(tables, books, stage, kg / mdot)
         books.branch_mass[branch] = mass - kg
-        clock = books.branch_clock[branch]
-        if purpose == KILOGRAMS:
-            write_line(books, (LINE_DRAW, leg, burner), (purpose, 0.0, kg, mass, clock, mask, spare - kg))
-        else:
-            write_line(books, (LINE_BURN, leg, burner), (purpose, paid, kg, mass, clock, mask, spare - kg))
+        kind, told = (LINE_DRAW, 0.0) if purpose == KILOGRAMS else (LINE_BURN, paid)
+        write_line(books, (kind, leg, burner), (purpose, told, kg, mass, books.branch_clock[branch], mask, spare - kg))
         amount -= paid
         if enough or amount <= 0.0:
             return 0.0
@@ -162,14 +164,7 @@ def _burn_lone(tables: Tables, books: Books, leg: int, burner: int, order: tuple
     mass = books.branch_mass[branch]
     speed = books.engine_speed[tables.lit[row.first_lit]]
     spare = books.usable[load]
-    wanted = amount if purpose == KILOGRAMS else -mass * math.expm1(-amount / speed)
-    enough = wanted <= spare
-    kg = wanted if enough else spare
-    paid = amount
-    if purpose == KILOGRAMS:
-        paid = kg
-    elif not enough:
-        paid = speed * math.log(mass / (mass - kg))
+    kg, paid, enough = _payable(purpose, amount, mass, (speed, spare))
     left = spare - kg
     books.usable[load] = left
     books.burned[load] += kg

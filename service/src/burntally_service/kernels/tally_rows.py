@@ -1,8 +1,8 @@
 """The rows that the tally reads and the books that it keeps: one name for each column.
 
 Rows are immutable and hold the numbers of a design and its plan as they were written. Books are lists of numbers that
-the tally fills. Compiled, rows become records of structured arrays and lists become arrays; the code is the same.
-Indices and flags are integers, quantities are floats in SI units. They are structs and no named tuples, since reading
+the tally fills; for many designs at once the numbers in both are such that write down what is done with them (`_tape`).
+Indices and flags are integers, quantities are floats in SI units. Rows are structs and no named tuples, since reading
 an attribute of a struct costs Python a quarter of the time, and making one a quarter too.
 """
 
@@ -220,9 +220,9 @@ class StepRow(Struct, frozen=True, gc=False):
 class Tables(Struct, frozen=True):
     """Everything that the tally reads.
 
-    The counts stand beside the rows, since a compiled record has room for more of them than there are. `burner_of` is
-    indexed account * stages + stage (-1: none), `last_named` branch * stages + stage and holds the last
-    leg of the branch that names the stage as a payer (-1: none).
+    The counts stand beside the rows, since every burn asks for some, and to ask a list takes Python twice as
+    long. `burner_of` is indexed account * stages + stage (-1: none), `last_named` branch * stages + stage and holds the
+    last leg of the branch that names the stage as a payer (-1: none).
     """
 
     items: Sequence[ItemRow]
