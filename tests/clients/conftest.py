@@ -15,6 +15,9 @@ from typing import Any, Final
 import msgspec
 import pytest
 
+from burntally_service.api.examples import answer_of
+from burntally_service.operations import OPERATIONS
+from tests.contract.likeness import differences
 from tests.environments import environment
 
 ROOT: Final = Path(__file__).parents[2]
@@ -73,6 +76,27 @@ def run(*command: str | Path, folder: Path = ROOT) -> str:
     )
     assert done.returncode == 0, done.stdout
     return done.stdout
+
+
+class AsRecorded:
+    """What holds of the client in every language: `told` is what a program that uses it has read from the service."""
+
+    @pytest.mark.parametrize("operation_id", OPERATIONS)
+    def test_an_answer_is_the_recorded_one(self, operation_id: str, told: dict[str, Any]) -> None:
+        assert differences(answer_of(operation_id)["answer"]["value"], told["answers"][operation_id]) == []
+
+    @pytest.mark.parametrize(
+        "name,status,code,pointer",
+        [
+            ("unreadable", 400, "invalid-request", "/vehicle/payloads/0/mass"),
+            ("contradicting", 422, "inconsistent-request", "/mission/legs/0/paid_by/0"),
+        ],
+    )
+    def test_a_problem_is_read_as_one(
+        self, name: str, status: int, code: str, pointer: str, told: dict[str, Any]
+    ) -> None:
+        problem = told["problems"][name]
+        assert (problem["status"], problem["code"], problem["errors"][0]["pointer"]) == (status, code, pointer)
 
 
 @pytest.fixture(scope="session")

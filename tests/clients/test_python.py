@@ -8,10 +8,9 @@ from typing import Any
 import msgspec
 import pytest
 
-from burntally_service.api.examples import answer_of, requests_of
+from burntally_service.api.examples import requests_of
 from burntally_service.operations import OPERATIONS
-from tests.clients.conftest import CONTRACT, HERE, ROOT, Tools, run
-from tests.contract.likeness import differences
+from tests.clients.conftest import CONTRACT, HERE, ROOT, AsRecorded, Tools, run
 
 SETTINGS = """\
 project_name_override: burntally
@@ -59,21 +58,8 @@ def test_a_program_and_the_whole_client_type_check(tools: Tools, project: Path) 
     run(*mypy, cache, "golden.py", "burntally_client", folder=project)
 
 
-@pytest.mark.parametrize("operation_id", OPERATIONS)
-def test_an_answer_is_the_recorded_one(operation_id: str, told: dict[str, Any]) -> None:
-    assert differences(answer_of(operation_id)["answer"]["value"], told["answers"][operation_id]) == []
-
-
-@pytest.mark.parametrize(
-    "name,status,code,pointer",
-    [
-        ("unreadable", 400, "invalid-request", "/vehicle/payloads/0/mass"),
-        ("contradicting", 422, "inconsistent-request", "/mission/legs/0/paid_by/0"),
-    ],
-)
-def test_a_problem_is_read_as_one(name: str, status: int, code: str, pointer: str, told: dict[str, Any]) -> None:
-    problem = told["problems"][name]
-    assert (problem["status"], problem["code"], problem["errors"][0]["pointer"]) == (status, code, pointer)
+class TestPython(AsRecorded):
+    """Its client reads what the service tells."""
 
 
 def test_a_design_is_written_as_it_was_read(told: dict[str, Any]) -> None:

@@ -8,9 +8,7 @@ import msgspec
 import pytest
 
 from burntally_service.api.examples import answer_of
-from burntally_service.operations import OPERATIONS
-from tests.clients.conftest import CONTRACT, HERE, Tools
-from tests.contract.likeness import differences
+from tests.clients.conftest import CONTRACT, HERE, AsRecorded, Tools
 
 JSON = "application/json"
 FLAGS = ["--default-non-nullable=false", "--root-types", "--root-types-no-schema-prefix"]
@@ -49,21 +47,8 @@ def test_a_program_and_all_examples_compile(tools: Tools, project: Path) -> None
     assert tools.node_tool("tsc", "--project", project) == ""
 
 
-@pytest.mark.parametrize("operation_id", OPERATIONS)
-def test_an_answer_is_the_recorded_one(operation_id: str, told: dict[str, Any]) -> None:
-    assert differences(answer_of(operation_id)["answer"]["value"], told["answers"][operation_id]) == []
-
-
-@pytest.mark.parametrize(
-    "name,status,code,pointer",
-    [
-        ("unreadable", 400, "invalid-request", "/vehicle/payloads/0/mass"),
-        ("contradicting", 422, "inconsistent-request", "/mission/legs/0/paid_by/0"),
-    ],
-)
-def test_a_problem_is_read_as_one(name: str, status: int, code: str, pointer: str, told: dict[str, Any]) -> None:
-    problem = told["problems"][name]
-    assert (problem["status"], problem["code"], problem["errors"][0]["pointer"]) == (status, code, pointer)
+class TestTypeScript(AsRecorded):
+    """Its client reads what the service tells."""
 
 
 def test_a_kind_of_location_is_told_by_its_tag(told: dict[str, Any]) -> None:
